@@ -52,7 +52,7 @@ def find_candidates(kinds: NDArray[np.int64], positions: Vectors, reach: float) 
     base = choose_base(positions, alike)
     images = _base_images(base, distances, alike, DISTANCE_FACTOR * reach)
     matrices, signs = _base_matrices(positions, base, images)
-    near = _bring_atoms_home(positions, kinds, alike, base, matrices, MISFIT_FACTOR * reach)
+    near = _bring_atoms_home(positions, alike, base, matrices, MISFIT_FACTOR * reach)
     return _assign(positions, kinds, base, matrices[near], signs[near], MISFIT_FACTOR * reach)
 
 
@@ -102,17 +102,18 @@ def _base_matrices(positions: Vectors, base: tuple[int, int], images: Permutatio
 
 def _frames(first: Vectors, second: Vectors) -> Matrices:
     """Return (p, 3, 3) right-handed frames, axes in columns, that treat two directions (p, 3) alike."""
-    first = first / np.linalg.norm(first, axis=1)[:, None]
-    second = second / np.linalg.norm(second, axis=1)[:, None]
-    total, difference = first + second, first - second
-    total /= np.maximum(np.linalg.norm(total, axis=1), 1e-9)[:, None]
-    difference /= np.maximum(np.linalg.norm(difference, axis=1), 1e-9)[:, None]
+    first, second = _units(first), _units(second)
+    total, difference = _units(first + second), _units(first - second)
     return np.stack([total, difference, np.cross(total, difference)], axis=2)
+
+
+def _units(vectors: Vectors) -> Vectors:
+    """Return unit vectors along the vectors (p, 3); a vector of no length stays so."""
+    return np.asarray(vectors / np.maximum(np.sqrt((vectors**2).sum(axis=1)), 1e-9)[:, None])
 
 
 def _bring_atoms_home(
     positions: Vectors,
-    kinds: NDArray[np.int64],
     alike: NDArray[np.bool_],
     base: tuple[int, int],
     matrices: Matrices,

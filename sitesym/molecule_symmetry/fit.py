@@ -66,15 +66,13 @@ def fit_group(positions: Vectors, permutations: Permutations, signs: Vectors) ->
         if np.abs(matrices - before).max() < _CONVERGED:
             break
         shape = averaged(shape, matrices, permutations)
-    unmoved = np.arange(len(positions))[None]
-    target = np.swapaxes(positions, 0, 1) @ shape
-    turn = _nearest_rotation(target) if len(unmoved) else np.eye(3)
+    turn = _best_turn(shape, positions)
     return measure(positions, turn @ matrices @ turn.T, permutations)
 
 
-def _nearest_rotation(covariance: Matrices) -> Matrices:
-    """Return the proper rotation nearest to a (3, 3) covariance."""
-    left, _, right = np.linalg.svd(covariance)
+def _best_turn(shape: Vectors, positions: Vectors) -> Matrices:
+    """Return the proper rotation (3, 3) that brings a shape (n, 3) nearest to the positions (n, 3)."""
+    left, _, right = np.linalg.svd(positions.T @ shape)
     left[:, 2] *= np.sign(np.linalg.det(left @ right))
     return np.asarray(left @ right)
 

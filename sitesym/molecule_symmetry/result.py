@@ -1,4 +1,4 @@
-"""What is known of a free molecule's symmetry: its operations, its idealised shape, and how far the measured one is off."""
+"""What is known of a free molecule's symmetry: its operations, its idealised shape and its deviation from that."""
 
 from __future__ import annotations
 
@@ -17,7 +17,7 @@ class HigherGroup:
     """The next larger group, which a little more tolerance would give.
 
     order: number of operations (of the finite stand-in when `linear` is set).
-    deviation: largest distance of an atom from its idealised place, Å.  rms: the root mean square of these distances, Å.
+    deviation: largest distance of an atom from its idealised place, Å.  rms: root mean square of these distances, Å.
     needed_tolerance: the least `tolerance` at which this group is accepted, Å.
     operations: (order, 3, 3) orthogonal Cartesian matrices about the centre, in the frame of the input.
     linear: "C∞v" or "D∞h" when the larger group is that of a linear molecule, else None.
@@ -42,7 +42,7 @@ class MoleculeSymmetry:
     permutations: (m, n); permutations[k, i] is the index of the atom that operation k takes atom i to.
     centre: (3,) Å, the mean of the measured positions; every operation keeps it.
     idealised: (n, 3) Å, the positions averaged over the group, in the frame of the input (not shifted to the centre).
-    deviation: largest distance of an atom from its idealised place, Å.  rms: the root mean square of these, Å.
+    deviation: largest distance of an atom from its idealised place, Å.  rms: root mean square of these, Å.
     needed_tolerance: the least `tolerance` at which this group is accepted, Å (see `fit.needed_tolerance`).
     linear: "C∞v" or "D∞h", else None.  axis: (3,) unit vector along a linear molecule, else None.
     next_higher: the next larger group within reach, or None.
