@@ -58,7 +58,8 @@ def _symbol(group: PointGroup, data: bytes, number: int) -> str:
     if not (group.elements.orders > 1).any():
         return "-1" if group.has_inversion else "1"
     places = [_place(group, _unit(np.array(one, dtype=float) @ lattice), number) for one in directions(number)]
-    return "".join(places)
+    filled = sum(place != "." for place in places) + any("-3" in place for place in places)
+    return "".join(place.replace("2/m", "m") if filled > 1 else place for place in places)
 
 
 def _unit(vectors: Floats) -> Floats:

@@ -1,0 +1,56 @@
+"""Zone-centre vibrations of crystals: species, activity and polarization from a structure file.
+
+    import sitesym
+    structure = sitesym.read("calcite.cif")
+    analysis = sitesym.analyse(structure)
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+from sitesym.version import __version__
+
+if TYPE_CHECKING:
+    from sitesym.analysis import Analysis, analyse
+    from sitesym.errors import InconsistencyError, NotAStructureError, ReadError, SitesymError, UsageError
+    from sitesym.reading import read
+    from sitesym.structure import Structure
+
+_HOMES = {
+    "Analysis": "sitesym.analysis",
+    "analyse": "sitesym.analysis",
+    "InconsistencyError": "sitesym.errors",
+    "NotAStructureError": "sitesym.errors",
+    "ReadError": "sitesym.errors",
+    "SitesymError": "sitesym.errors",
+    "UsageError": "sitesym.errors",
+    "read": "sitesym.reading",
+    "Structure": "sitesym.structure",
+}
+
+__all__ = [
+    "Analysis",
+    "InconsistencyError",
+    "NotAStructureError",
+    "ReadError",
+    "SitesymError",
+    "Structure",
+    "UsageError",
+    "__version__",
+    "analyse",
+    "read",
+]
+
+
+def __getattr__(name: str) -> Any:
+    """Import a public name when it is first used, so that `import sitesym` costs nothing."""
+    if name not in _HOMES:
+        raise AttributeError(f"module 'sitesym' has no attribute '{name}'")
+    from importlib import import_module
+
+    return getattr(import_module(_HOMES[name]), name)
+
+
+def __dir__() -> list[str]:
+    return __all__

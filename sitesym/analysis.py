@@ -1,0 +1,220 @@
+"""From a structure to its zone-centre analysis: the one result that plans, explanations and views read."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+from sitesym.cautions import cautions_of
+from sitesym.decomposition import checked_sum, site_contribution
+from sitesym.groups.point_group import PointGroup
+from sitesym.groups.subduction import Multiplicities, reduce_characters, subtracted
+from sitesym.selection import Activity, activities, vector_species
+from sitesym.structure import OpenQuestion, Structure
+from sitesym.symmetry.axes import SettingLabels, describe_axes, orthorhombic_labels
+from sitesym.symmetry.crystal import DEFAULT_TOLERANCE, CrystalSymmetry, Orbit, find_symmetry
+from sitesym.symmetry.scan import Scan, scan_tolerance
+from sitesym.symmetry.site_symbol import oriented_symbol
+from sitesym.tensors import TensorSpecies, tensor_species
+
+
+@dataclass(frozen=True, eq=False)
+class SpeciesRow:
+    """One species of the factor group.
+
+    total     how often it occurs among all 3N branches (counting a degenerate species once).
+    acoustic  how often among the three acoustic branches.
+    activity  selection rules; tensor its Raman tensors and polar directions in the axes of the report.
+    """
+
+    label: str
+    dimension: int
+    total: int
+    acoustic: int
+    activity: Activity
+    tensor: TensorSpecies
+
+    @property
+    def optic(self) -> int:
+        """Distinct optic frequencies of this species."""
+        return self.total - self.acoustic
+
+    def __repr__(self) -> str:
+        return f"SpeciesRow({self.label}: {self.optic} optic, {self.acoustic} acoustic)"
+
+
+@dataclass(frozen=True, eq=False)
+class SiteRow:
+    """One set of equivalent sites.
+
+    multiplicity   in the conventional cell of the report; `count` in the primitive cell.
+    symbol         oriented Hermann-Mauguin symbol of the site group.
+    site_species   the species of the site group to which the three displacements belong.
+    contribution   species of the factor group that the displacements give, acoustic ones included.
+    position       fractional coordinates of the representative in the axes of the report.
+    """
+
+    label: str
+    element: str
+    occupancy: float
+    wyckoff: str
+    multiplicity: int
+    count: int
+    group: PointGroup
+    symbol: str
+    site_species: Multiplicities
+    contribution: Multiplicities
+    position: tuple[float, float, float]
+
+    def __repr__(self) -> str:
+        return f"SiteRow({self.label}: {self.multiplicity}{self.wyckoff}, {self.symbol})"
+
+
+@dataclass(frozen=True, slots=True)
+class Totals:
+    """Counts of distinct fundamental frequencies of optic branches; a degenerate species counts once.
+
+    `branches` is 3N; `optic` counts distinct optic frequencies.
+    """
+
+    atoms_primitive: int
+    branches: int
+    optic: int
+    infrared: int
+    raman: int
+    infrared_and_raman: int
+    silent: int
+    hyper_raman: int
+
+
+@dataclass(frozen=True, eq=False)
+class Analysis:
+    """The zone-centre analysis of a crystal.
+
+    cautions  what to know before believing it, the most serious first.
+    axes      a sentence on the Cartesian axes of all labels and tensors.
+    scan      how the space group depends on the tolerance; None when it was not asked for.
+    """
+
+    structure: Structure
+    symmetry: CrystalSymmetry
+    sites: tuple[SiteRow, ...]
+    species: tuple[SpeciesRow, ...]
+    totals: Totals
+    axes: str
+    scan: Scan | None
+    cautions: tuple[OpenQuestion, ...]
+
+    def __repr__(self) -> str:
+        totals = self.totals
+        return (
+            f"Analysis({self.structure.formula}, {self.space_group}, {self.factor_group.schoenflies}: "
+            f"{totals.infrared} infrared, {totals.raman} Raman, {totals.silent} silent)"
+        )
+
+    def _repr_html_(self) -> str:
+        from sitesym.views.notebook import summary_html
+
+        return summary_html(self)
+
+    @property
+    def space_group(self) -> str:
+        """Hermann-Mauguin symbol in the axes of the report: `R-3c`, `P2_1/c`, `P 1 1 2_1/b` where c is unique."""
+        setting = self.symmetry.setting
+        return setting.full if _needs_directions(self.symmetry) else setting.short.replace(" ", "")
+
+    @cached_property
+    def settings(self) -> tuple[SettingLabels, ...]:
+        """For orthorhombic crystals the labels in all six settings, the report's own first; else empty."""
+        return orthorhombic_labels(self.symmetry)
+
+    @property
+    def factor_group(self) -> PointGroup:
+        """Point group of the crystal in the axes of the report."""
+        return self.symmetry.factor_group
+
+    @cached_property
+    def factor_group_symbol(self) -> str:
+        """Hermann-Mauguin symbol of the class with its orientation: `-3m`, `-4m2`, `2mm`."""
+        symbol = oriented_symbol(self.factor_group, self.symmetry.lattice, self.symmetry.number)
+        return symbol.replace(".", "")
+
+    @cached_property
+    def is_ordered(self) -> bool:
+        """Whether every site is fully occupied by one element."""
+        return self.structure.is_ordered
+
+    def species_row(self, label: str) -> SpeciesRow:
+        """The row of one species. Raises KeyError for a label that the factor group does not have."""
+        return {row.label: row for row in self.species}[label]
+
+
+def analyse(
+    structure: Structure,
+    tolerance: float = DEFAULT_TOLERANCE,
+    *,
+    axes: str = "auto",
+    setting: str | None = None,
+    scan: bool = True,
+) -> Analysis:
+    """Analyse the zone-centre vibrations of a crystal.
+
+    tolerance  Å, for finding the space group.
+    axes       "auto": those of the input cell when it is conventional, else of the standardised cell; "input" or
+               "standard" insist on one.
+    setting    Hermann-Mauguin symbol of a setting of the space group, to label and orient everything in it.
+    scan       also search at other tolerances, to tell how far the space group can be trusted.
+
+    Raises UsageError for arguments that make no sense, InconsistencyError when two routes to a number disagree.
+    """
+    symmetry = find_symmetry(structure, tolerance, axes=axes, setting=setting)
+    sites = tuple(_site_row(symmetry, orbit) for orbit in symmetry.orbits)
+    whole = checked_sum(symmetry, (row.contribution for row in sites))
+    species = _species_rows(symmetry, whole)
+    scanned = scan_tolerance(symmetry) if scan else None
+    return Analysis(
+        structure, symmetry, sites, species, _totals(symmetry, species), describe_axes(symmetry),
+        scanned, cautions_of(structure, symmetry, scanned),
+    )  # fmt: skip
+
+
+def _site_row(symmetry: CrystalSymmetry, orbit: Orbit) -> SiteRow:
+    site = symmetry.structure.sites[orbit.site]
+    group = symmetry.site_group(orbit)
+    vectors = group.matrices.trace(axis1=1, axis2=2)
+    x, y, z = (float(value) for value in symmetry.positions[orbit.atoms[0]])
+    return SiteRow(
+        site.label, site.element, site.occupancy, orbit.wyckoff, orbit.multiplicity, len(orbit.atoms), group,
+        oriented_symbol(group, symmetry.lattice, symmetry.number), reduce_characters(group.species, vectors),
+        site_contribution(symmetry, orbit), (x, y, z),
+    )  # fmt: skip
+
+
+def _species_rows(symmetry: CrystalSymmetry, whole: Multiplicities) -> tuple[SpeciesRow, ...]:
+    group = symmetry.factor_group
+    acoustic = vector_species(group)
+    subtracted(whole, acoustic)
+    return tuple(
+        SpeciesRow(rule.label, rule.dimension, whole.get(rule.label, 0), acoustic.get(rule.label, 0), rule, tensor)
+        for rule, tensor in zip(activities(group), tensor_species(group), strict=True)
+    )
+
+
+def _totals(symmetry: CrystalSymmetry, species: tuple[SpeciesRow, ...]) -> Totals:
+    def count(rows: list[SpeciesRow]) -> int:
+        return sum(row.optic for row in rows)
+
+    return Totals(
+        len(symmetry.atoms),
+        3 * len(symmetry.atoms),
+        count(list(species)),
+        count([row for row in species if row.activity.infrared]),
+        count([row for row in species if row.activity.raman]),
+        count([row for row in species if row.activity.infrared and row.activity.raman]),
+        count([row for row in species if row.activity.silent]),
+        count([row for row in species if row.activity.hyper_raman]),
+    )
+
+
+def _needs_directions(symmetry: CrystalSymmetry) -> bool:
+    return 3 <= symmetry.number <= 15 and not symmetry.setting.choice.startswith("b")
