@@ -7,7 +7,6 @@ International Tables B, as spglib stores them.
 
 from __future__ import annotations
 
-import os
 import warnings
 from dataclasses import dataclass
 from functools import lru_cache
@@ -97,7 +96,7 @@ def search(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float
 
 
 def _dataset(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float) -> Any:
-    os.environ.setdefault("SPGLIB_OLD_ERROR_HANDLING", "false")
+    """None on failure, whichever way this version of spglib (or the user's setting of it) reports one."""
     with warnings.catch_warnings():
         warnings.simplefilter("ignore")
         try:

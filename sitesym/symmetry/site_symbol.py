@@ -58,8 +58,11 @@ def _symbol(group: PointGroup, data: bytes, number: int) -> str:
     if not (group.elements.orders > 1).any():
         return "-1" if group.has_inversion else "1"
     places = [_place(group, _unit(np.array(one, dtype=float) @ lattice), number) for one in directions(number)]
-    filled = sum(place != "." for place in places) + any("-3" in place for place in places)
-    return "".join(place.replace("2/m", "m") if filled > 1 else place for place in places)
+    if places[1:2] == ["-3"]:
+        places[0] = places[0].replace("4/m", "m")
+    symbol = "".join(places)
+    alone = symbol.strip(".") == "2/m"
+    return symbol if alone else symbol.replace("2/m", "m")
 
 
 def _unit(vectors: Floats) -> Floats:
@@ -67,21 +70,18 @@ def _unit(vectors: Floats) -> Floats:
 
 
 def _place(group: PointGroup, lines: Floats, number: int) -> str:
-    found = [_along(group.elements, line) for line in lines]
-    present = [symbol for symbol in found if symbol]
-    if not present:
-        return "."
-    if _are_equivalent(group, lines) or len(present) == 1:
-        return present[0]
+    """What lies along one set of directions; lines that the site group itself carries into each other count once."""
+    present: list[str] = []
+    seen = np.zeros(len(lines), dtype=bool)
+    for line in lines:
+        images = np.abs(group.matrices @ line @ lines.T).max(axis=0) > 1 - 1e-4
+        symbol = _along(group.elements, line)
+        if symbol and not (images & seen).any():
+            present.append(symbol)
+        seen |= images
     if number > 194:
-        return "".join(sorted(present, key=lambda symbol: (-_order(symbol), _RANK.get(symbol, 0))))
-    return "".join(present)
-
-
-def _are_equivalent(group: PointGroup, lines: Floats) -> bool:
-    """Whether the site group carries the first of these lines into all others that count."""
-    images = np.abs(group.matrices @ lines[0] @ lines.T)
-    return bool((images.max(axis=0) > 1 - 1e-4).all())
+        present.sort(key=lambda symbol: (-_order(symbol), _RANK.get(symbol, 0)))
+    return "".join(present) or "."
 
 
 def _order(symbol: str) -> int:
