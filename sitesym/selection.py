@@ -24,7 +24,7 @@ _PRESENT = 1e-6
 class Activity:
     """What one species can do.
 
-    polar      axes (x, y, z of the group's Cartesian frame) along which its dipole may point; empty: not infrared active.
+    polar      axes (x, y, z of the group's Cartesian frame) along which its dipole may point; none: not in infrared.
     rotations  axes about which a rotation belongs to it (Rx, Ry, Rz).
     raman      in the symmetric tensor; `resonance` in the antisymmetric one.
     """

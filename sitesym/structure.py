@@ -123,6 +123,12 @@ class Structure:
         return float(abs(np.linalg.det(self.lattice)))
 
     @property
+    def right_handed(self) -> tuple[Floats, Floats]:
+        """Lattice and coordinates in a right-handed cell: of a left-handed one all three axes are reversed."""
+        sign = np.sign(np.linalg.det(self.lattice))
+        return self.lattice * sign, self.fractional * sign
+
+    @property
     def elements(self) -> tuple[str, ...]:
         """Element name of every site; mixed sites read like `Ca/Mg`."""
         return tuple(site.element for site in self.sites)

@@ -97,7 +97,7 @@ def _cubic_pair(symmetric: Floats) -> Floats:
     first = symmetric[:, 0]
     measured = np.array([first[:, 2], first[:, 0] - first[:, 1]])
     wanted = np.diag([-2.0, 2 * np.sqrt(3)])
-    return np.einsum("nm,mdv->ndv", (np.linalg.inv(measured) @ wanted).T, symmetric)
+    return np.asarray(np.einsum("nm,mdv->ndv", (np.linalg.inv(measured) @ wanted).T, symmetric))
 
 
 def _reduced_rows(matrix: Floats) -> Floats:

@@ -1,0 +1,1 @@
+"""Point groups and their representations; nothing in here knows of crystals or files."""

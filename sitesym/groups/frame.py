@@ -101,4 +101,5 @@ def _polar_x(elements: Elements, z: Floats, wanted: Floats) -> Floats:
     normals = elements.axes[elements.mirrors & elements.across(z)]
     closeness = np.round(np.abs(normals @ wanted), 6)
     best = max(range(len(normals)), key=lambda k: (closeness[k], round(float(normals[k].sum()), 6)))
-    return np.asarray(normals[best] * np.sign(normals[best] @ wanted or 1.0) if closeness[best] else upward(normals[best]))
+    chosen = normals[best]
+    return np.asarray(chosen * np.sign(chosen @ wanted)) if closeness[best] else upward(chosen)

@@ -32,7 +32,8 @@ def cubic_harmonics() -> tuple[Floats, Floats]:
     """Orthonormal bases of T2 (3, 7) and G (4, 7) in the space of `on_cubic`."""
     group = canonical_group()
     traces = np.trace(group, axis1=1, axis2=2)
-    conjugate = np.select([np.isclose(traces, _GOLDEN), np.isclose(traces, 1 - _GOLDEN)], [1 - _GOLDEN, _GOLDEN], traces)
+    fifth, two_fifths = np.isclose(traces, _GOLDEN), np.isclose(traces, 1 - _GOLDEN)
+    conjugate = np.select([fifth, two_fifths], [1 - _GOLDEN, _GOLDEN], traces)
     projector = 3 / 60 * np.einsum("g,gij->ij", conjugate, on_cubic(group))
     values, vectors = np.linalg.eigh(projector)
     return vectors[:, values > 0.5].T, vectors[:, values < 0.5].T

@@ -50,7 +50,7 @@ class Representation:
     @property
     def dimension(self) -> int:
         """1, 2, 3, 4 or 5."""
-        return self.matrices.shape[1]
+        return int(self.matrices.shape[1])
 
     @property
     def characters(self) -> Floats:
@@ -59,7 +59,7 @@ class Representation:
 
 
 def representations(labelling: Labelling, matrices: Floats) -> tuple[Representation, ...]:
-    """All species of the group, in the order of printed tables, evaluated on operations (n, 3, 3) in its Cartesian axes.
+    """All species of the group, in the order of printed tables, on operations (n, 3, 3) in its Cartesian axes.
 
     The operations may be any subset of the group, such as those of a subgroup. Linear groups, which have infinitely
     many species, are listed up to Γ (four units of angular momentum).

@@ -24,7 +24,7 @@ changes an element by 5e-3 at the least.
 
 def determinants(matrices: Floats) -> Integers:
     """+1 for proper, -1 for improper operations, shape (...,)."""
-    return np.rint(np.linalg.det(matrices)).astype(np.int64)
+    return np.asarray(np.rint(np.linalg.det(matrices)), dtype=np.int64)
 
 
 def proper_parts(matrices: Floats) -> Floats:
@@ -35,7 +35,7 @@ def proper_parts(matrices: Floats) -> Floats:
 def angles(rotations: Floats) -> Floats:
     """Rotation angles in radians, 0 to π, of proper rotations."""
     traces = np.trace(rotations, axis1=-2, axis2=-1)
-    return np.arccos(np.clip((traces - 1) / 2, -1, 1))
+    return np.asarray(np.arccos(np.clip((traces - 1) / 2, -1, 1)))
 
 
 def axis(rotation: Floats) -> Floats:

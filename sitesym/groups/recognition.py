@@ -11,7 +11,16 @@ from dataclasses import dataclass
 import numpy as np
 
 from sitesym.groups.kind import Family, Kind
-from sitesym.groups.operation import Booleans, Floats, Integers, angles, axis, determinants, order_of_angle, proper_parts
+from sitesym.groups.operation import (
+    Booleans,
+    Floats,
+    Integers,
+    angles,
+    axis,
+    determinants,
+    order_of_angle,
+    proper_parts,
+)
 
 PARALLEL = 1e-4
 """Two unit vectors are parallel, or perpendicular, when the sine, or cosine, between them is below this."""
@@ -41,7 +50,7 @@ class Elements:
     @property
     def mirrors(self) -> Booleans:
         """(n,) True for reflections: the rotation part is a half turn about the mirror's normal."""
-        return ~self.proper & (self.orders == 2)
+        return np.asarray(~self.proper & (self.orders == 2))
 
     def along(self, direction: Floats) -> Booleans:
         """(n,) True where the axis is parallel to the unit vector `direction`."""

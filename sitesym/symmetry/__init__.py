@@ -1,0 +1,1 @@
+"""The symmetry of a crystal structure: search, axes, site groups, tolerance."""

@@ -20,10 +20,13 @@ _COMPLETING = "completing a right-handed set"
 
 def axis_words(lattice: Floats) -> tuple[str, str, str]:
     """What x, y and z are parallel to: `a`, `b*`, or that the axis completes the right-handed set."""
-    direct = lattice / np.linalg.norm(lattice, axis=1)[:, None]
-    reciprocal = np.linalg.inv(lattice).T
-    reciprocal /= np.linalg.norm(reciprocal, axis=1)[:, None]
-    return tuple(_word(direct[:, k], reciprocal[:, k], k) for k in range(3))  # type: ignore[return-value]
+    direct, reciprocal = _unit(lattice), _unit(np.asarray(np.linalg.inv(lattice).T, dtype=float))
+    x, y, z = (_word(direct[:, k], reciprocal[:, k], k) for k in range(3))
+    return x, y, z
+
+
+def _unit(vectors: Floats) -> Floats:
+    return np.asarray(vectors / np.linalg.norm(vectors, axis=1)[:, None])
 
 
 def _word(direct: Floats, reciprocal: Floats, axis: int) -> str:

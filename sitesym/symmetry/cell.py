@@ -14,7 +14,6 @@ import numpy as np
 
 from sitesym.errors import UsageError
 from sitesym.groups.operation import Booleans, Floats, Integers
-from sitesym.structure import Structure
 from sitesym.symmetry.library import Search, Setting, setting, setting_operations, settings_of
 
 _IDENTITY = np.eye(3, dtype=np.int64)
@@ -45,7 +44,7 @@ class Cell:
     @property
     def centring_vectors(self) -> Floats:
         """(k, 3) translations of the lattice points in the cell, (0, 0, 0) included."""
-        return self.translations[(self.rotations == _IDENTITY).all(axis=(1, 2))]
+        return np.asarray(self.translations[(self.rotations == _IDENTITY).all(axis=(1, 2))])
 
     def rebased(self, change: Integers, target: Setting) -> Cell:
         """The same crystal in the basis (a, b, c) @ change, a matrix of determinant 1."""
@@ -61,22 +60,22 @@ class Cell:
         )
 
 
-def choose_cell(structure: Structure, found: Search, axes: str, symbol: str | None) -> Cell:
-    """The cell for `axes` ("auto", "input" or "standard") and, if given, a setting's Hermann-Mauguin symbol.
+def choose_cell(lattice: Floats, fractional: Floats, found: Search, axes: str, symbol: str | None) -> Cell:
+    """The cell for `axes` ("auto", "input" or "standard") and for a setting's Hermann-Mauguin symbol, if given.
 
-    Raises UsageError when the input cell is asked for but is not conventional, or the symbol is no setting of the group.
+    Raises UsageError when the input cell is asked for but is not conventional, or the symbol is no setting of it.
     """
-    cell = None if axes == "standard" else _input_cell(structure, found)
+    cell = None if axes == "standard" else _input_cell(lattice, fractional, found)
     if cell is None and axes == "input":
         raise UsageError(
             f"The input cell is not a conventional cell of space group {found.number}.",
             "Use --axes standard, or give the structure in a conventional cell.",
         )
-    cell = cell or _standard_cell(structure, found)
+    cell = cell or _standard_cell(found)
     return cell if symbol is None else _in_setting(cell, symbol)
 
 
-def _input_cell(structure: Structure, found: Search) -> Cell | None:
+def _input_cell(lattice: Floats, fractional: Floats, found: Search) -> Cell | None:
     """The input cell, if its operations are those of a tabulated setting (but not one with rhombohedral axes)."""
     if abs(abs(np.linalg.det(found.transformation)) - 1) > 1e-3:
         return None
@@ -85,12 +84,12 @@ def _input_cell(structure: Structure, found: Search) -> Cell | None:
         return None
     _, first = np.unique(found.primitive_of, return_index=True)
     chosen = np.sort(first)
-    metric = _averaged(structure.lattice @ structure.lattice.T, found.rotations)
-    positions = structure.fractional[chosen]
+    metric = _averaged(lattice @ lattice.T, found.rotations)
+    positions = fractional[chosen]
     return Cell(metric, found.rotations, found.translations, positions, chosen, matched, "input")
 
 
-def _standard_cell(structure: Structure, found: Search) -> Cell:
+def _standard_cell(found: Search) -> Cell:
     rotations, translations = setting_operations(found.hall_number)
     _, first = np.unique(found.standard_primitive_of, return_index=True)
     _, source = np.unique(found.primitive_of, return_index=True)
@@ -151,7 +150,7 @@ def _is_lattice_part(rotation: Integers, shift: Floats, lattice: Floats) -> bool
     powers = [_IDENTITY]
     while not np.array_equal(nxt := rotation @ powers[-1], _IDENTITY):
         powers.append(nxt)
-    kept = sum(powers) / len(powers)
+    kept = np.sum(powers, axis=0) / len(powers)
     return bool((np.abs(kept @ (shift - np.rint(shift)) - lattice @ kept.T).max(axis=1) < 0.02).any())
 
 
@@ -160,13 +159,17 @@ def _in_setting(cell: Cell, symbol: str) -> Cell:
     targets = [one for one in settings_of(cell.setting.number) if wanted in _names(one) and one.choice != "R"]
     if not targets:
         known = ", ".join(dict.fromkeys(one.full for one in settings_of(cell.setting.number)))
-        raise UsageError(f"'{symbol}' is no setting of space group {cell.setting.number}.", f"Settings known: {known}.")
+        raise UsageError(
+            f"'{symbol}' is no setting of space group {cell.setting.number}.", f"Settings known: {known}."
+        )
     for change in _changes_of_basis():
         for target in targets:
             candidate = cell.rebased(change, target)
             if match_setting(candidate.rotations, candidate.translations, target.number) in targets:
                 return candidate
-    raise UsageError(f"The cell cannot be brought to '{symbol}' without changing its volume.", "Choose another setting.")
+    raise UsageError(
+        f"The cell cannot be brought to '{symbol}' without changing its volume.", "Choose another setting."
+    )
 
 
 def _names(one: Setting) -> set[str]:

@@ -118,9 +118,9 @@ def find_symmetry(
 
     Raises UsageError for a useless argument, InconsistencyError when operations and atoms contradict each other.
     """
-    lattice, positions = _right_handed(structure)
+    lattice, positions = structure.right_handed
     found = search(lattice, positions, structure.kinds, tolerance)
-    cell = choose_cell(structure, found, axes, setting)
+    cell = choose_cell(lattice, positions, found, axes, setting)
     first = _one_for_each_rotation(cell.rotations)
     rotations, translations = cell.rotations[first], cell.translations[first]
     basis = conventional_lattice(cell.metric)
@@ -140,12 +140,6 @@ def conventional_lattice(metric: Floats) -> Floats:
     b_x = (metric[0, 1] - a_z * b_z) / a_x
     b_y = np.sqrt(metric[1, 1] - b_x**2 - b_z**2)
     return np.array([[a_x, 0.0, a_z], [b_x, b_y, b_z], [0.0, 0.0, length_c]])
-
-
-def _right_handed(structure: Structure) -> tuple[Floats, Floats]:
-    """The same atoms in a right-handed cell: all three axes of a left-handed one reversed, coordinates with them."""
-    sign = np.sign(np.linalg.det(structure.lattice))
-    return structure.lattice * sign, structure.fractional * sign
 
 
 def _one_for_each_rotation(rotations: Integers) -> Integers:

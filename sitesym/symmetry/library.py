@@ -8,6 +8,7 @@ International Tables B, as spglib stores them.
 from __future__ import annotations
 
 import warnings
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import lru_cache
 from typing import Any
@@ -70,7 +71,9 @@ def search(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float
     Raises UsageError for a tolerance outside 0 to 2 Å, InconsistencyError when no group is found.
     """
     if not (np.isfinite(tolerance) and 0 < tolerance <= LARGEST_TOLERANCE):
-        raise UsageError(f"A tolerance of {tolerance} Å is of no use.", f"Give one between 0 and {LARGEST_TOLERANCE} Å.")
+        raise UsageError(
+            f"A tolerance of {tolerance} Å is of no use.", f"Give one between 0 and {LARGEST_TOLERANCE} Å."
+        )
     if not (np.isfinite(lattice).all() and np.isfinite(positions).all()):
         raise InconsistencyError("The cell holds a value that is no finite number.", "Correct the structure.")
     found = _dataset(lattice, positions, kinds, tolerance)
@@ -97,20 +100,25 @@ def search(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float
 
 def _dataset(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float) -> Any:
     """None on failure, whichever way this version of spglib (or the user's setting of it) reports one."""
+    try:
+        return _quietly(spglib.get_symmetry_dataset, (lattice, positions, kinds), tolerance)
+    except Exception as error:
+        if type(error).__module__.startswith("spglib"):
+            return None
+        raise
+
+
+def _quietly(function: Callable[..., Any], *arguments: Any) -> Any:
+    """Call spglib without its warnings on how it will report failures in future."""
     with warnings.catch_warnings():
         warnings.simplefilter("ignore")
-        try:
-            return spglib.get_symmetry_dataset((lattice, positions, kinds), symprec=tolerance)
-        except Exception as error:
-            if type(error).__module__.startswith("spglib"):
-                return None
-            raise
+        return function(*arguments)
 
 
 @lru_cache(maxsize=530)
 def setting(hall_number: int) -> Setting:
     """Symbols of one of the 530 settings."""
-    entry = spglib.get_spacegroup_type(hall_number)
+    entry = _quietly(spglib.get_spacegroup_type, hall_number)
     parts = [part.strip() for part in entry.international.split("=")]
     return Setting(hall_number, entry.number, parts[0], parts[-1], entry.hall_symbol, entry.choice)
 
@@ -118,7 +126,7 @@ def setting(hall_number: int) -> Setting:
 @lru_cache(maxsize=530)
 def setting_operations(hall_number: int) -> tuple[Integers, Floats]:
     """Rotations (m, 3, 3) and translations (m, 3) of a setting, centring translations included."""
-    database = spglib.get_symmetry_from_database(hall_number)
+    database = _quietly(spglib.get_symmetry_from_database, hall_number)
     return database["rotations"].astype(np.int64), database["translations"]
 
 
@@ -137,7 +145,7 @@ def settings_of(number: int) -> tuple[Setting, ...]:
 
 @lru_cache(maxsize=1)
 def _first_halls() -> tuple[int, ...]:
-    numbers = [spglib.get_spacegroup_type(hall).number for hall in range(1, 531)]
+    numbers = [setting(hall).number for hall in range(1, 531)]
     return tuple(numbers.index(number) + 1 for number in range(1, 231))
 
 

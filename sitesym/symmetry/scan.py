@@ -59,12 +59,13 @@ def scan_tolerance(symmetry: CrystalSymmetry) -> Scan:
     searches[symmetry.tolerance] = base
     ordered = sorted(searches.items())
     points = tuple(_point(tolerance, found) for tolerance, found in ordered)
-    return Scan(points, _plateau(ordered, symmetry.tolerance, symmetry.number), _supergroup(structure, ordered, symmetry))
+    plateau = _plateau(ordered, symmetry.tolerance, symmetry.number)
+    return Scan(points, plateau, _supergroup(structure, ordered, symmetry))
 
 
 def _try(structure: Structure, tolerance: float) -> Search | None:
     try:
-        return search(structure.lattice, structure.fractional, structure.kinds, tolerance)
+        return search(*structure.right_handed, structure.kinds, tolerance)
     except SitesymError:
         return None
 
@@ -129,13 +130,14 @@ def _gained(found: Search, base: Search) -> Integers:
 
 def _mismatch(structure: Structure, rotation: Integers, translation: Floats) -> float:
     """Largest distance in Å from the image of an atom to the nearest atom of its kind."""
-    images = structure.fractional @ rotation.T + translation
+    lattice, positions = structure.right_handed
+    images = positions @ rotation.T + translation
     worst = 0.0
     for kind in np.unique(structure.kinds):
         mine = structure.kinds == kind
         for start in range(0, int(mine.sum()), _ROWS_AT_ONCE):
-            away = images[mine][start : start + _ROWS_AT_ONCE, None] - structure.fractional[mine][None]
+            away = images[mine][start : start + _ROWS_AT_ONCE, None] - positions[mine][None]
             away -= np.rint(away)
-            nearest = np.sqrt(((away @ structure.lattice) ** 2).sum(axis=2)).min(axis=1)
+            nearest = np.sqrt(((away @ lattice) ** 2).sum(axis=2)).min(axis=1)
             worst = max(worst, float(nearest.max()))
     return worst
