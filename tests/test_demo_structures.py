@@ -1,4 +1,4 @@
-"""The files of structures_demo, read and checked by general libraries alone (pymatgen, spglib, gemmi).
+"""The files of structures_demo, checked by general libraries alone (pymatgen, spglib, gemmi), then read by sitesym.
 
 Space groups are those of the papers cited in each file; bond lengths are those of the trade (International Tables,
 volume C, section 9.5, and the papers), quoted from memory and wide enough only for what thermal motion and rounding do.
@@ -12,6 +12,8 @@ import pytest
 import spglib
 from pymatgen.core import Structure
 from pymatgen.io.vasp import Poscar
+
+import sitesym
 
 # The other reader warns of the faults that two files have on purpose and of coordinates such as 0.66667; the older
 # interface of spglib, which serves all supported versions here, warns of its successor.
@@ -123,3 +125,24 @@ def test_cold_strontium_titanate_turns_cubic_within_the_scanned_tolerances():
     """At 77 K the octahedra are turned by 1.4 degrees (Unoki and Sakudo 1967), which moves oxygen by 0.05 Å."""
     structure = load("strontium_titanate_77K.cif")
     assert [space_group(structure, tolerance) for tolerance in (0.001, 0.03, 0.1)] == [140, 140, 221]
+
+
+@pytest.mark.parametrize("name", EXPECTED)
+def test_sitesym_reads_it_without_a_warning_and_finds_the_same_space_group(name):
+    structure = sitesym.read(str(FOLDER / name))
+    taught = {"magnesian_calcite.cif": {"mixed_occupancy"}, FAULTY_FORMULA: {"hydrogen_missing"}}
+    assert len(structure) == EXPECTED[name][1]
+    assert sitesym.analyse(structure, tolerance=0.01, scan=False).symmetry.setting.number == EXPECTED[name][0]
+    assert {question.code for question in structure.questions} == taught.get(name, set())
+
+
+def test_the_cautions_that_the_folder_teaches_are_given():
+    """Common practice: an average structure, missing hydrogen and a nearby supergroup are said beside the counts."""
+
+    def cautions(name):
+        return {caution.code for caution in sitesym.analyse(sitesym.read(str(FOLDER / name))).cautions}
+
+    assert "average_structure" in cautions("magnesian_calcite.cif")
+    assert "hydrogen_missing" in cautions("portlandite_without_hydrogen.cif")
+    assert "near_supergroup" in cautions("strontium_titanate_77K.cif")
+    assert cautions("calcite.cif") == set()
