@@ -42,15 +42,22 @@ def fill(style: Style, template: str, **parts: str) -> str:
 
 
 def infrared_words(row: SpeciesRow) -> str:
-    """`E ∥ z`, `E ∥ (x, y)`, `E in plane (x, z)` where symmetry leaves the dipole's direction open; "" if inactive."""
-    axes = row.activity.polar
-    if not axes:
+    """`E ∥ z` or `E ∥ (x, y)`; "" if inactive.
+
+    Where symmetry leaves the dipole's direction open: `E in plane (x, z)`, or `E not fixed` in space.
+    """
+    if not row.activity.infrared:
         return ""
     if is_direction_open(row):
-        return f"E in plane ({', '.join(axes)})" if len(axes) == 2 else f"E in space ({', '.join(axes)})"
+        return f"E in plane ({axes_words(row)})" if len(row.activity.polar) == 2 else "E not fixed"
     if row.dimension == 1:
         return f"E ∥ {direction_words(row.tensor.polar_space[0])}".replace("∥ −", "∥ ")
-    return f"E ∥ ({', '.join(axes)})"
+    return f"E ∥ ({axes_words(row)})"
+
+
+def axes_words(row: SpeciesRow) -> str:
+    """`x, z`: the axes along which the dipole of this species has a part."""
+    return ", ".join(row.activity.polar)
 
 
 def is_direction_open(row: SpeciesRow) -> bool:
@@ -63,7 +70,7 @@ def polar_words(row: SpeciesRow, component: int) -> str:
     direction = row.tensor.components[component].polar
     if direction is None:
         return ""
-    return ", ".join(row.activity.polar) if is_direction_open(row) else direction_words(direction)
+    return axes_words(row) if is_direction_open(row) else direction_words(direction)
 
 
 def direction_words(direction: Floats) -> str:
@@ -213,7 +220,9 @@ def other_cautions(analysis: Analysis) -> tuple[OpenQuestion, ...]:
 
 def notes(analysis: Analysis, style: Style = TEXT) -> tuple[str, ...]:
     """All notes to the table of species that apply, in reading order, each ready for the style."""
-    makers = (exclusion, polarization_note, silent_note, resonance_note, longitudinal_note, hexagonal_note)
+    makers = (
+        exclusion, polarization_note, silent_note, resonance_note, longitudinal_note, hexagonal_note, trigonal_note,
+    )  # fmt: skip
     return tuple(sentence for maker in makers if (sentence := maker(analysis, style)))
 
 
@@ -241,11 +250,9 @@ def exclusion(analysis: Analysis, style: Style = TEXT) -> str:
 def polarization_note(analysis: Analysis, style: Style = TEXT) -> str:
     """For triclinic and monoclinic crystals: symmetry does not fix where the dipole points."""
     sentences = [
-        fill(
-            style, _OPEN[len(row.activity.polar)], species=style.species(row.label), axes=", ".join(row.activity.polar)
-        )
+        fill(style, _OPEN[len(row.activity.polar)], species=style.species(row.label), axes=axes_words(row))
         for row in analysis.species
-        if is_direction_open(row) and (axes := row.activity.polar)
+        if is_direction_open(row)
     ]
     return " ".join(sentences)
 
@@ -308,6 +315,22 @@ def hexagonal_note(analysis: Analysis, style: Style = TEXT) -> str:
     )
 
 
+def trigonal_note(analysis: Analysis, style: Style = TEXT) -> str:
+    """In trigonal classes the sign of some tensor elements hangs on the sense of the axes."""
+    if not 143 <= analysis.symmetry.number <= 167 or not any(_couples(row) for row in analysis.species):
+        return ""
+    return fill(
+        style,
+        "In trigonal crystals the elements yz and xz of a degenerate species change sign against xx−yy and xy when x "
+        "and y are reversed (a turn by 180° about z): compare the axes before comparing signs with the literature.",
+    )
+
+
+def _couples(row: SpeciesRow) -> bool:
+    """A degenerate species that is seen both along and across the main axis."""
+    return row.dimension == 2 and len(raman_elements(row.tensor)) > 1
+
+
 def permutation_note(analysis: Analysis, style: Style = TEXT) -> str:
     """What the table of orthorhombic settings is for; "" for other crystals."""
     if not analysis.settings:
@@ -315,7 +338,8 @@ def permutation_note(analysis: Analysis, style: Style = TEXT) -> str:
     return fill(
         style,
         "The labels of the B species depend on which axis is called a, b and c. This table translates them from the "
-        "setting of this report to the others; compare settings before comparing labels with the literature.",
+        "setting of this report to the others, whose a, b, c are given in terms of the report's. Compare settings "
+        "before comparing labels with the literature.",
     )
 
 

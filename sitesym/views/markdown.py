@@ -1,0 +1,150 @@
+"""The report in Markdown (with tables as most dialects have them), for notebooks, wikis and issue trackers."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from typing import TYPE_CHECKING
+
+from sitesym.tensors import element_expressions
+from sitesym.views import sentences
+from sitesym.views.labels import MARKDOWN, decomposition
+from sitesym.views.method import paragraphs, references
+
+if TYPE_CHECKING:
+    from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+
+_plain = MARKDOWN.plain
+
+
+def render(analysis: Analysis) -> str:
+    """The whole report, ending in a line feed."""
+    sections = (
+        ("Species", [*_species_table(analysis), "", *(f"- {note}" for note in sentences.notes(analysis, MARKDOWN))]),
+        ("Sites", _sites_table(analysis)),
+        ("What each site contributes", _contributions(analysis)),
+        ("Raman tensors", _tensors(analysis)),
+        ("Labels in other settings", _settings(analysis)),
+        ("Tolerance", _tolerance(analysis)),
+        ("Method", _method(analysis)),
+    )
+    lines = _answer(analysis)
+    for title, body in sections:
+        if body:
+            lines += ["", f"## {title}", "", *body]
+    return "\n".join(lines) + "\n"
+
+
+def _answer(analysis: Analysis) -> list[str]:
+    structure = analysis.structure
+    title = " ".join(filter(None, (MARKDOWN.formula(structure.formula), _plain(structure.name))))
+    fields = (
+        ("File", " ".join(filter(None, (structure.source, f"({structure.format})" if structure.format else "")))),
+        ("Axes", analysis.axes),
+        ("Atoms", sentences.atoms_words(analysis)),
+    )
+    return [
+        f"# {title}",
+        "",
+        *(f"- **Caution:** {_plain(one.message)}" for one in sentences.serious_cautions(analysis)),
+        f"- Space group: {sentences.space_group_words(analysis, MARKDOWN)}",
+        f"- Factor group: {sentences.factor_group_words(analysis, MARKDOWN)}",
+        *(f"- {name}: {_plain(words)}" for name, words in fields if words),
+        f"- Γ(optic) = {sentences.optic_sum(analysis, MARKDOWN)}",
+        f"- Γ(acoustic) = {sentences.acoustic_sum(analysis, MARKDOWN)}",
+        *(f"- **Caution:** {_plain(one.message)}" for one in sentences.other_cautions(analysis)),
+        "",
+        *_table(
+            ("", "distinct frequencies", "species"),
+            ((row.title, str(row.count), row.species) for row in sentences.count_rows(analysis, MARKDOWN)),
+            "<><",
+        ),
+    ]
+
+
+def _table(header: Sequence[str], rows: Iterable[Sequence[str]], align: str) -> list[str]:
+    """A table; `align` has one of `<` and `>` for each column. Cells are safe for Markdown already."""
+    rules = ["---:" if side == ">" else ":---" for side in align]
+    return [f"| {' | '.join(cells)} |" for cells in (header, rules, *rows)]
+
+
+def _species_table(analysis: Analysis) -> list[str]:
+    header = ("species", "total", "acoustic", "optic", "infrared", "Raman", "hyper-Raman")
+    return _table(header, map(_species_line, analysis.species), "<>>><<<")
+
+
+def _species_line(row: SpeciesRow) -> tuple[str, ...]:
+    infrared = "silent" if row.activity.silent else sentences.infrared_words(row)
+    hyper = "yes" if row.activity.hyper_raman else ""
+    counts = (str(row.total), str(row.acoustic), str(row.optic))
+    return (MARKDOWN.species(row.label), *counts, infrared, sentences.raman_words(row), hyper)
+
+
+def _sites_table(analysis: Analysis) -> list[str]:
+    header = ("atom", "element", "occupancy", "Wyckoff", "site group", "", "moves as", "x", "y", "z")
+    return _table(header, map(_site_line, analysis.sites), "<<><<<<>>>")
+
+
+def _site_line(row: SiteRow) -> tuple[str, ...]:
+    return (
+        _plain(row.label), _plain(row.element), f"{row.occupancy:.4g}", f"{row.multiplicity}{row.wyckoff}",
+        MARKDOWN.symbol(row.symbol), MARKDOWN.schoenflies(row.group.schoenflies),
+        decomposition(row.site_species, MARKDOWN), *(f"{value:.4f}" for value in row.position),
+    )  # fmt: skip
+
+
+def _contributions(analysis: Analysis) -> list[str]:
+    labels = [row.label for row in analysis.species]
+    rows = [(_plain(row.label), *(str(row.contribution.get(one, 0)) for one in labels)) for row in analysis.sites]
+    sums = [
+        ("**total**", *(str(row.total) for row in analysis.species)),
+        ("acoustic", *(str(row.acoustic) for row in analysis.species)),
+        ("**optic**", *(str(row.optic) for row in analysis.species)),
+    ]
+    return _table(("", *map(MARKDOWN.species, labels)), [*rows, *sums], "<" + ">" * len(labels))
+
+
+def _tensors(analysis: Analysis) -> list[str]:
+    rows = [
+        _tensor_line(row, component)
+        for row in analysis.species
+        if row.activity.raman
+        for component in range(row.dimension)
+    ]
+    return _table(("species", "dipole", "xx", "yy", "zz", "xy", "xz", "yz"), rows, "<<<<<<<<")
+
+
+def _tensor_line(row: SpeciesRow, component: int) -> tuple[str, ...]:
+    elements = element_expressions(row.tensor.components[component], row.tensor.letters)
+    name = MARKDOWN.species(row.label) + (f"({component + 1})" if row.dimension > 1 else "")
+    places = ((0, 0), (1, 1), (2, 2), (0, 1), (0, 2), (1, 2))
+    cells = (sentences.element_words(elements[i][j]) or "·" for i, j in places)
+    return (name, sentences.polar_words(row, component), *cells)
+
+
+def _settings(analysis: Analysis) -> list[str]:
+    if not analysis.settings:
+        return []
+    labels = list(analysis.settings[0].labels)
+    rows = [
+        (MARKDOWN.symbol(one.symbol.replace(" ", "")), one.axes, *(MARKDOWN.species(one.labels[key]) for key in labels))
+        for one in analysis.settings
+    ]
+    header = ("setting", "axes", *map(MARKDOWN.species, labels))
+    return [sentences.permutation_note(analysis, MARKDOWN), "", *_table(header, rows, "<" * len(header))]
+
+
+def _tolerance(analysis: Analysis) -> list[str]:
+    rows = [
+        (f"{run.low:g}", f"{run.high:g}", MARKDOWN.symbol(run.symbol), str(run.number or ""), "yes" if run.used else "")
+        for run in sentences.scan_runs(analysis)
+    ]
+    header = ("from (Å)", "to (Å)", "space group", "number", "this report")
+    used = f"This report: {analysis.symmetry.tolerance:g} Å. {sentences.declared_words(analysis, MARKDOWN)}"
+    return [*(_table(header, rows, ">><><") if rows else ["No other tolerance was tried."]), "", used]
+
+
+def _method(analysis: Analysis) -> list[str]:
+    lines: list[str] = []
+    for paragraph in paragraphs(analysis, MARKDOWN):
+        lines += [f"**{paragraph.heading}.** {paragraph.text}", ""]
+    return lines + [f"{number}. {_plain(text)}" for number, text in enumerate(references(analysis), start=1)]
