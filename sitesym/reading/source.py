@@ -10,6 +10,7 @@ import os
 import stat
 import sys
 import zlib
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 from typing import IO, Any
@@ -20,7 +21,11 @@ from sitesym.reading.text import printable
 LARGEST = 100 * 2**20
 """Bytes read at most; a structure file of 20,000 atoms has about two million."""
 
-_COMPRESSED = {b"\x1f\x8b": gzip.open, b"BZh": bz2.open, b"\xfd7zXZ\x00": lzma.open}
+_COMPRESSED: dict[bytes, Callable[[IO[bytes]], Any]] = {
+    b"\x1f\x8b": gzip.open,
+    b"BZh": bz2.open,
+    b"\xfd7zXZ\x00": lzma.open,
+}
 _BYTE_ORDER_MARKS = {b"\xef\xbb\xbf": "utf-8-sig", b"\xff\xfe": "utf-16", b"\xfe\xff": "utf-16"}
 
 
