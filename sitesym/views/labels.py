@@ -16,7 +16,9 @@ _GREEK = {"Sigma": "Σ", "Pi": "Π", "Delta": "Δ", "Phi": "Φ", "Gamma": "Γ"}
 _PRIMES = {"": "", "'": "′", "''": "″"}
 _SIGNS = {"": "", "+": "⁺", "-": "⁻"}
 _SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
-_SYMBOL = re.compile(r"-(\d+)|_(\d)|(.)", re.DOTALL)
+_SYMBOL = re.compile(
+    r"-([12]\d|\d)|_(\d)|(.)", re.DOTALL
+)  # an axis of order 10 or more (-10m2), or of one digit (-42m)
 _SCHOENFLIES = re.compile(r"([A-Z])(.*)", re.DOTALL)
 _AMOUNT = re.compile(r"(?<=[A-Za-z)])(\d+(?:\.\d+)?)")
 _BAR = "\u0304"

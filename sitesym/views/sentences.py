@@ -177,16 +177,18 @@ def setting_words(analysis: Analysis) -> str:
     if choice == "H":
         return "hexagonal axes"
     if 3 <= analysis.symmetry.number <= 15:
-        return _monoclinic_words(choice)
+        return _monoclinic_words(choice, analysis.symmetry.setting.full)
     standard = [one.symbol for one in analysis.settings if one.standard]
     if standard and not analysis.settings[0].standard:
         return f"a setting of {TEXT.symbol(standard[0].replace(' ', ''))}"
     return ""
 
 
-def _monoclinic_words(choice: str) -> str:
+def _monoclinic_words(choice: str, full: str) -> str:
+    """The unique axis, and the full symbol for cells other than the first choice, which the short symbol hides."""
     bare = choice.removeprefix("-")
-    return f"unique axis {bare[0]}" + (f", cell choice {bare[1]}" if len(bare) > 1 else "")
+    named = f", cell choice {bare[1]}" if len(bare) > 1 else ""
+    return f"unique axis {bare[0]}{named}" + (f": {TEXT.symbol(full)}" if choice not in ("a", "b", "c", "b1") else "")
 
 
 def space_group_words(analysis: Analysis, style: Style = TEXT) -> str:
