@@ -63,7 +63,7 @@ def alike_atoms(kinds: NDArray[np.int64], positions: Vectors, distances: Vectors
     difference, so no true image is lost.
     """
     radii = np.sqrt((positions**2).sum(axis=1))
-    alike = (kinds[:, None] == kinds[None]) & (np.abs(radii[:, None] - radii[None]) <= limit)
+    alike: NDArray[np.bool_] = (kinds[:, None] == kinds[None]) & (np.abs(radii[:, None] - radii[None]) <= limit)
     for kind in np.unique(kinds):
         columns = np.sort(distances[:, kinds == kind], axis=1)
         picked = np.unique(np.linspace(0, columns.shape[1] - 1, _COLUMNS).astype(int))
@@ -125,9 +125,18 @@ def _bring_atoms_home(
     left = np.arange(len(matrices))
     for atom in telling:
         images = matrices[left] @ positions[atom]
-        gaps = ((images[:, None] - positions[alike[atom]][None]) ** 2).sum(axis=2)
-        left = left[gaps.min(axis=1) <= limit**2]
+        left = left[_nearest_squares(images, positions[alike[atom]]) <= limit**2]
     return left
+
+
+def _nearest_squares(points: Vectors, targets: Vectors) -> Vectors:
+    """Return (k,): the square of the distance from each point (k, 3) to the nearest target (t, 3)."""
+    nearest, squares = np.empty(len(points)), (targets**2).sum(axis=1)
+    step = max(1, _BATCH // len(targets))
+    for start in range(0, len(points), step):
+        part = points[start : start + step]
+        nearest[start : start + step] = (squares - 2 * part @ targets.T).min(axis=1) + (part**2).sum(axis=1)
+    return nearest
 
 
 def _assign(

@@ -17,6 +17,8 @@ MOST_OPERATIONS = 480
 SAME_TRACE = 1e-10
 """Two rotations count as one below an angle of 1e-5."""
 
+_ROWS = 32
+
 
 class ProductTable:
     """Products among candidate operations; -1 stands for a product that is no candidate."""
@@ -45,13 +47,21 @@ class ProductTable:
                 return frozenset(members.tolist()) if self._composes(members) else None
             members = grown
 
+    def double_coset(self, members: frozenset[int], candidate: int) -> set[int]:
+        """Return the candidates that generate, with a group, the same larger group: all products h c h'."""
+        group = np.array(sorted(members))
+        left = self._table[group, candidate]
+        return set(self._table[np.ix_(left[left >= 0], group)].ravel().tolist()) | {candidate}
+
     def _composes(self, members: NDArray[np.int64]) -> bool:
         """Check the whole permutations, not the images of the base alone."""
         permutations = self._permutations[members]
-        return all(
-            (permutation[permutations] == self._permutations[self._table[member, members]]).all()
-            for member, permutation in zip(members, permutations, strict=True)
-        )
+        for start in range(0, len(members), _ROWS):
+            rows = slice(start, start + _ROWS)
+            expected = self._permutations[self._table[np.ix_(members[rows], members)]]
+            if not (permutations[rows][:, permutations] == expected).all():
+                return False
+        return True
 
 
 def matrix_group(generators: Sequence[Matrices]) -> Matrices:
@@ -87,8 +97,8 @@ def largest_closure_error(matrices: Matrices) -> float:
     """Return how far the product of any two matrices (m, 3, 3) is from the nearest one of them (largest entry)."""
     flat = matrices.reshape(len(matrices), 9)
     worst = 0.0
-    for matrix in matrices:
-        products = (matrix @ matrices).reshape(-1, 9)
+    for start in range(0, len(matrices), _ROWS):
+        products = (matrices[start : start + _ROWS, None] @ matrices[None]).reshape(-1, 9)
         nearest = (products @ flat.T).argmax(axis=1)
         worst = max(worst, float(np.abs(products - flat[nearest]).max()))
     return worst

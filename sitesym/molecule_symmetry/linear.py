@@ -25,9 +25,14 @@ class LinearFit:
     fit: Fit
 
 
-def linear_fits(kinds: NDArray[np.int64], positions: Vectors, required: RequiredGroup) -> list[LinearFit]:
-    """Return the linear groups that the order of the atoms allows, the larger one first; positions about the centre."""
+def linear_fits(kinds: NDArray[np.int64], positions: Vectors, required: RequiredGroup, reach: float) -> list[LinearFit]:
+    """Return the linear groups that the order of the atoms allows, the larger one first; positions about the centre.
+
+    There is none where an atom lies further than `reach` (Å) from the line, for that much it would have to move.
+    """
     axis = line_of_best_fit(positions)
+    if (np.cross(positions, axis) ** 2).sum(axis=1).max() > reach**2:
+        return []
     places = np.argsort(positions @ axis, kind="stable")
     keeping, fits = np.arange(len(kinds)), []
     if (kinds[places] == kinds[places[::-1]]).all():

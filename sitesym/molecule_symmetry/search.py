@@ -4,7 +4,8 @@
 2. Growth: starting from the operations that the crystal requires, candidates are added one by one, those with the
    smallest misfit first, each time with all their products. A larger group is kept when symmetrising the positions by
    it needs no more than the tolerance (`fit.needed_tolerance`). Growth is repeated from every candidate that was left
-   out, and the largest group wins (of equal ones the one that needs the least tolerance).
+   out, and the largest group wins (of equal ones the one that needs the least tolerance). Mostly all likely candidates
+   together are a group that passes; that is tried first.
 3. The matrices are fitted again to the symmetrised positions until they are an exact group.
 """
 
@@ -24,10 +25,22 @@ from sitesym.molecule_symmetry.required import RequiredGroup, required_group
 from sitesym.molecule_symmetry.result import HigherGroup, MoleculeSymmetry, Vectors
 
 DEFAULT_TOLERANCE = 0.25
-"""Å. Five times the scatter (0.05 Å in each coordinate) up to which a group should be recovered."""
+"""Å. Five times the scatter (0.05 Å in each coordinate) up to which a group should be recovered.
+
+Measured on the 89 molecules of the tests at random scatters: 1780 of 1780 right at 0.02 Å, 3556 of 3560 at 0.05 Å
+(ammonia, 0.29 Å from planar, was once taken for planar; three were told too low), three in ten at 0.1 Å, where a tolerance of
+0.5 Å recovers 97 %. It cannot see everything: one atom out of place by 0.3 Å is noticed in 9 cases of 10 when it is one
+of six alike or more, but hardly ever as one of two, for symmetrising moves each of them by 0.15 Å, no more than scatter.
+"""
 
 REACH_FACTOR = 1.5
 """The next higher group is looked for up to this many tolerances."""
+
+LIKELY_FACTOR = 1.5
+"""A candidate whose misfit exceeds this many tolerances is not used to grow a group (it may belong to a higher one)."""
+
+ALONE_FACTOR = 1.2
+"""Nor is one that alone needs this many tolerances; some room is left, for a larger group may need a little less."""
 
 LARGEST_TOLERANCE = 1.0
 SMALLEST_DISTANCE = 0.1
@@ -60,7 +73,7 @@ def find_operations(
     shape = group.symmetrised(points - centre)
     if len(kinds) == 1:
         return _atom(centre, group, has_required=required is not None)
-    linear = linear_fits(kinds, shape, group)
+    linear = linear_fits(kinds, shape, group, REACH_FACTOR * tolerance)
     chosen = next((option for option in linear if option.fit.needed_tolerance <= tolerance), None)
     if chosen is not None:
         higher = [option for option in linear if option.fit.needed_tolerance > tolerance]
@@ -143,25 +156,43 @@ class _Search:
 
     def largest(self, tolerance: float) -> frozenset[int]:
         """Return the largest group that needs no more than the tolerance."""
-        best = self._grown(self._required, tolerance)
+        likely = np.flatnonzero(self._candidates.misfit <= LIKELY_FACTOR * tolerance).tolist()
+        whole = self._table.group(likely)
+        if whole is not None and self.fit(whole).needed_tolerance <= tolerance:
+            return whole
+        return self._largest_grown(self._promising(likely, tolerance), tolerance)
+
+    def _promising(self, likely: Sequence[int], tolerance: float) -> list[int]:
+        """Return the candidates that alone (with the required ones) need little more than the tolerance, best first."""
+        needed = {}
+        for candidate in likely:
+            group = self._table.group([*self._required, candidate])
+            if group is not None:
+                needed[candidate] = self.fit(group).needed_tolerance
+        return sorted((c for c in needed if needed[c] <= ALONE_FACTOR * tolerance), key=needed.__getitem__)
+
+    def _largest_grown(self, promising: Sequence[int], tolerance: float) -> frozenset[int]:
+        """Grow a group from every candidate that no group holds yet, and return the largest."""
+        best = self._grown(self._required, promising, tolerance)
         tried = set(best)
-        for candidate in range(len(self._candidates.signs)):
+        for candidate in promising:
             start = None if candidate in tried else self._joined(self._required, candidate, tolerance)
             if start is not None:
-                other = self._grown(start, tolerance)
+                other = self._grown(start, promising, tolerance)
                 tried |= other
                 best = max(best, other, key=lambda group: (len(group), -self.fit(group).needed_tolerance))
         return best
 
-    def _grown(self, start: frozenset[int], tolerance: float) -> frozenset[int]:
-        """Add candidates to a group, in the order of their misfit, until no more can be added."""
-        group, before = start, None
-        while group != before:
-            before = group
-            for candidate in range(len(self._candidates.signs)):
-                if candidate not in group:
-                    group = self._joined(group, candidate, tolerance) or group
-        return group
+    def _grown(self, start: frozenset[int], promising: Sequence[int], tolerance: float) -> frozenset[int]:
+        """Add candidates to a group, in the order given, until no more can be added."""
+        group, settled = start, set(start)
+        while True:
+            candidate = next((c for c in promising if c not in settled), None)
+            if candidate is None:
+                return group
+            larger = self._joined(group, candidate, tolerance)
+            settled = settled | self._table.double_coset(group, candidate) if larger is None else set(larger)
+            group = larger or group
 
     def _joined(self, group: frozenset[int], candidate: int, tolerance: float) -> frozenset[int] | None:
         """Return the group with a candidate and all products, or None if it needs more than the tolerance."""
@@ -172,8 +203,11 @@ class _Search:
 
     def above(self, group: frozenset[int]) -> list[Fit]:
         """Return the fits of the groups that one more candidate leads to."""
-        others = (c for c in range(len(self._candidates.signs)) if c not in group)
-        larger = {self._table.group([*group, candidate]) for candidate in others}
+        settled, larger = set(group), set()
+        for candidate in range(len(self._candidates.signs)):
+            if candidate not in settled:
+                settled |= self._table.double_coset(group, candidate)
+                larger.add(self._table.group([*group, candidate]))
         return [self.fit(members) for members in larger if members is not None]
 
 
