@@ -59,7 +59,8 @@ class Kind:
             return special
         if self.family is Family.S2N:
             return f"S{2 * self.n}"
-        return self.family.value.replace("n", str(self.n)) if self.n else self.family.value
+        name = str(self.family.value)
+        return name.replace("n", str(self.n)) if self.n else name
 
     @property
     def hermann_mauguin(self) -> str:

@@ -65,9 +65,29 @@ def order_of_angle(angle: float) -> tuple[int, int]:
 
 def index_of(matrices: Floats, group: Floats) -> Integers:
     """For each of `matrices` (m, 3, 3) its index in `group` (n, 3, 3); -1 where it is not among them."""
-    distance = np.abs(matrices[:, None] - group[None]).reshape(len(matrices), len(group), 9).max(axis=2)
-    same = distance < SAME
-    return np.where(same.any(axis=1), same.argmax(axis=1), -1)
+    flat, known = matrices.reshape(-1, 9), group.reshape(-1, 9)
+    found = _by_projection(flat, known)
+    missing = np.flatnonzero(found < 0)
+    if len(missing):
+        same = (np.abs(flat[missing, None] - known[None]) < SAME).all(axis=2)
+        found[missing] = np.where(same.any(axis=1), same.argmax(axis=1), -1)
+    return found
+
+
+_PROJECTION = np.sqrt([2.0, 3.0, 5.0, 7.0, 11.0, 13.0, 17.0, 19.0, 23.0])
+
+
+def _by_projection(flat: Floats, known: Floats) -> Integers:
+    """A quick first look: the element nearest on one generic line, taken only if it is the same matrix."""
+    values = known @ _PROJECTION
+    order = np.argsort(values, kind="stable")
+    place = np.searchsorted(values[order], flat @ _PROJECTION - SAME)
+    found = np.full(len(flat), -1, dtype=np.int64)
+    for step in range(3):
+        candidate = order[np.minimum(place + step, len(known) - 1)]
+        same = (found < 0) & (np.abs(flat - known[candidate]).max(axis=1) < SAME)
+        found[same] = candidate[same]
+    return found
 
 
 def closure(generators: Floats, limit: int = 240) -> Floats:

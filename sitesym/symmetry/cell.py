@@ -30,6 +30,7 @@ class Cell:
     positions     (n, 3) fractional, one atom for each atom of the primitive cell.
     atoms         (n,) index of each in the input structure.
     setting       the tabulated setting whose axes these are.
+    to_standard   (3, 3) matrix P and (3,) shift p: x -> P x + p gives coordinates in the standardised cell.
     choice        "input", "standard" or "setting": why this cell.
     """
 
@@ -39,6 +40,7 @@ class Cell:
     positions: Floats
     atoms: Integers
     setting: Setting
+    to_standard: tuple[Floats, Floats]
     choice: str
 
     @property
@@ -56,6 +58,7 @@ class Cell:
             self.positions @ inverse.T,
             self.atoms,
             target,
+            (self.to_standard[0] @ change, self.to_standard[1]),
             "setting",
         )
 
@@ -86,7 +89,8 @@ def _input_cell(lattice: Floats, fractional: Floats, found: Search) -> Cell | No
     chosen = np.sort(first)
     metric = _averaged(lattice @ lattice.T, found.rotations)
     positions = fractional[chosen]
-    return Cell(metric, found.rotations, found.translations, positions, chosen, matched, "input")
+    to_standard = found.transformation, found.shift
+    return Cell(metric, found.rotations, found.translations, positions, chosen, matched, to_standard, "input")
 
 
 def _standard_cell(found: Search) -> Cell:
@@ -96,7 +100,9 @@ def _standard_cell(found: Search) -> Cell:
     order = np.argsort(source)
     metric = _averaged(found.standard_lattice @ found.standard_lattice.T, rotations)
     positions = found.standard_positions[first[order]]
-    return Cell(metric, rotations, translations, positions, source[order], setting(found.hall_number), "standard")
+    same = np.eye(3), np.zeros(3)
+    tabulated = setting(found.hall_number)
+    return Cell(metric, rotations, translations, positions, source[order], tabulated, same, "standard")
 
 
 def _averaged(metric: Floats, rotations: Integers) -> Floats:

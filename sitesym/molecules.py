@@ -1,0 +1,181 @@
+"""Molecules and complex ions in a crystal: which there are, their own point group, and their site group."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from sitesym.bonding import BondRules, Bonds
+from sitesym.errors import InconsistencyError
+from sitesym.groups.operation import Floats, Integers
+from sitesym.groups.point_group import PointGroup
+from sitesym.molecule_frame import molecule_group
+from sitesym.molecule_symmetry import DEFAULT_TOLERANCE, MoleculeSymmetry, find_operations
+from sitesym.symmetry.crystal import CrystalSymmetry
+from sitesym.symmetry.primitive import PrimitiveCell, moved, primitive_cell
+from sitesym.units import Unit, bonds_of, find_units
+
+LocalBonds = tuple[tuple[int, int], ...]
+
+
+@dataclass(frozen=True, eq=False)
+class FreeMolecule:
+    """One finite unit taken out of its crystal, or a molecule alone.
+
+    elements   names of its n atoms; positions (n, 3) Å from the centre, idealised to the symmetry of `group`.
+    measured   (n, 3) Å from the centre, as they were.
+    bonds      pairs of its atoms.
+    symmetry   the operations found, with the deviation from them; group the same with labels on the molecule's axes.
+    """
+
+    elements: tuple[str, ...]
+    labels: tuple[str, ...]
+    positions: Floats
+    measured: Floats
+    bonds: LocalBonds
+    symmetry: MoleculeSymmetry
+    group: PointGroup
+
+
+@dataclass(frozen=True, eq=False)
+class UnitSet:
+    """Symmetry-equivalent units of a crystal.
+
+    unit        the representative; `count` of them in the primitive cell.
+    stabiliser  indices of the operations of the factor group that keep the representative (for a net: None).
+    site_group  that group, its labels following the crystal's axes (for a net: None).
+    centre      (3,) fractional coordinates of the representative's centre in the axes of the report.
+    atoms       indices among the primitive atoms of all the units of the set.
+    free        the representative as a free molecule; None for single atoms and nets.
+    """
+
+    unit: Unit
+    count: int
+    stabiliser: Integers | None
+    site_group: PointGroup | None
+    centre: Floats
+    atoms: Integers
+    free: FreeMolecule | None
+
+    @property
+    def is_molecule(self) -> bool:
+        """Finite, and more than one atom."""
+        return self.free is not None
+
+
+def units_of_crystal(
+    symmetry: CrystalSymmetry, rules: BondRules | None = None, tolerance: float = DEFAULT_TOLERANCE
+) -> tuple[UnitSet, ...]:
+    """All units of a crystal, one set for each kind of symmetry-equivalent ones, in the order of their first atoms.
+
+    rules      the user's word on bonds and units; tolerance Å for the free molecules' own symmetry.
+
+    Raises UsageError for rules that name what is not there, InconsistencyError when symmetry does not carry units
+    into units.
+    """
+    cell = primitive_cell(symmetry)
+    bonds = bonds_of(cell.structure, rules)
+    sites = cell.structure.sites
+    contents = [{one.element: one.occupancy for one in site.occupants} for site in sites]
+    labels = [site.label for site in sites]
+    units = find_units(bonds, len(sites), cell.structure.elements, labels, contents=contents)
+    owner = _owners(units, len(sites))
+    sets: list[UnitSet] = []
+    done: set[int] = set()
+    for index, unit in enumerate(units):
+        if index not in done:
+            reached = owner[symmetry.images[0][:, unit.atoms]]
+            members = sorted(set(reached.ravel().tolist()))
+            done.update(members)
+            sets.append(_unit_set(symmetry, cell, bonds, units, owner, index, members, tolerance))
+    return tuple(sets)
+
+
+def _owners(units: Sequence[Unit], count: int) -> Integers:
+    owner = np.zeros(count, dtype=np.int64)
+    for index, unit in enumerate(units):
+        owner[unit.atoms] = index
+    return owner
+
+
+def _unit_set(
+    symmetry: CrystalSymmetry, cell: PrimitiveCell, bonds: Bonds, units: Sequence[Unit], owner: Integers,
+    index: int, members: list[int], tolerance: float,
+) -> UnitSet:  # fmt: skip
+    unit = units[index]
+    atoms = np.concatenate([units[member].atoms for member in members])
+    points = cell.structure.fractional[unit.atoms] + unit.shifts
+    centre = points.mean(axis=0) @ cell.basis
+    if unit.dimension > 0:
+        return UnitSet(unit, len(members), None, None, centre, atoms, None)
+    kept = _stabiliser(symmetry, cell, unit, units, owner, index)
+    if len(kept) * len(members) != len(symmetry.factor_group):
+        raise InconsistencyError(
+            f"{len(members)} equivalent units {unit.formula} and a site group of order {len(kept)} do not make a factor "
+            f"group of order {len(symmetry.factor_group)}.",
+            "Name the units yourself with --unit, --bond or --no-bond, or try another --tolerance.",
+        )
+    site_group = symmetry.factor_group.subgroup(kept)
+    free = None
+    if len(unit.atoms) > 1:
+        free = _free_molecule(cell, bonds, unit, points @ cell.structure.lattice, site_group, tolerance)
+    return UnitSet(unit, len(members), kept, site_group, centre, atoms, free)
+
+
+def _stabiliser(
+    symmetry: CrystalSymmetry, cell: PrimitiveCell, unit: Unit, units: Sequence[Unit], owner: Integers, index: int
+) -> Integers:
+    """Operations that carry the unit to itself; every other must carry it to another whole unit.
+
+    Raises InconsistencyError where an image is no unit.
+    """
+    place = {int(atom): k for unit_ in units for k, atom in enumerate(unit_.atoms)}
+    kept = []
+    for operation in range(len(symmetry.factor_group)):
+        atoms, shifts = moved(symmetry, cell, operation, unit.atoms, unit.shifts)
+        image = units[int(owner[atoms[0]])]
+        stored = image.shifts[[place[int(atom)] for atom in atoms]]
+        if len(set(owner[atoms].tolist())) > 1 or np.ptp(shifts - stored, axis=0).any():
+            raise InconsistencyError(
+                f"An operation of the crystal tears the unit {unit.formula} apart.",
+                "The bonds found are not symmetric; name the units with --unit, --bond or --no-bond.",
+            )
+        if int(owner[atoms[0]]) == index:
+            kept.append(operation)
+    return np.array(kept, dtype=np.int64)
+
+
+def _free_molecule(
+    cell: PrimitiveCell, bonds: Bonds, unit: Unit, points: Floats, site_group: PointGroup, tolerance: float
+) -> FreeMolecule:
+    elements = tuple(cell.structure.elements[atom] for atom in unit.atoms)
+    labels = tuple(cell.structure.sites[atom].label for atom in unit.atoms)
+    required = list(site_group.matrices)
+    return free_molecule(elements, labels, points, _local_bonds(bonds, unit), tolerance, required)
+
+
+def free_molecule(
+    elements: tuple[str, ...], labels: tuple[str, ...], points: Floats, bonds: LocalBonds,
+    tolerance: float = DEFAULT_TOLERANCE, required: Sequence[Floats] | None = None,
+) -> FreeMolecule:  # fmt: skip
+    """A molecule with its own point group.
+
+    points    (n, 3) Å in any frame; required: site operations (3, 3) in that frame which the group must contain.
+    """
+    found = find_operations(elements, points, tolerance=tolerance, required=required)
+    positions = found.idealised - found.centre
+    if found.linear and found.axis is not None:
+        group = PointGroup.linear(found.axis, centred=found.linear == "D∞h")
+    else:
+        group = molecule_group(found.operations, positions, bonds)
+    return FreeMolecule(elements, labels, positions, points - found.centre, bonds, found, group)
+
+
+def _local_bonds(bonds: Bonds, unit: Unit) -> LocalBonds:
+    """Bonds between the unit's atoms as pairs of positions in its list."""
+    place = {int(atom): index for index, atom in enumerate(unit.atoms)}
+    return tuple(
+        (place[i], place[j]) for i, j in zip(bonds.first.tolist(), bonds.second.tolist(), strict=True) if i in place
+    )

@@ -1,0 +1,137 @@
+"""The vibrations of a free molecule by species and by kind: stretching, bending, out-of-plane, torsion.
+
+The representation of all displacements, less translations and rotations, gives the internal vibrations (Wilson, Decius
+and Cross, Molecular Vibrations, 1955, chapter 6). Each kind of internal coordinate spans a subspace that the group
+keeps; what a kind adds to those named before it is counted as its own, so redundant coordinates count nothing.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from sitesym.errors import InconsistencyError
+from sitesym.groups.operation import Floats, Integers, determinants
+from sitesym.groups.point_group import PointGroup
+from sitesym.groups.subduction import Multiplicities, added, in_order, reduce_characters, subtracted
+from sitesym.internal_coordinates import bends, neighbours, out_of_plane_bends, stretches, torsions
+
+KINDS = ("stretching", "bending", "out-of-plane", "torsion", "skeletal")
+"""In the order in which they are counted; `skeletal` is what the graph of bonds does not reach."""
+
+_INDEPENDENT = 1e-5
+
+
+@dataclass(frozen=True, slots=True)
+class FreeVibrations:
+    """Species of a free molecule's motions.
+
+    internal      all internal vibrations; kinds the same divided by kind (kinds that do not occur are left out).
+    translations  species of the three translations; rotations of the two or three rotations (none for an atom).
+    """
+
+    internal: Multiplicities
+    kinds: dict[str, Multiplicities]
+    translations: Multiplicities
+    rotations: Multiplicities
+
+
+def free_vibrations(group: PointGroup, positions: Floats, bonds: Sequence[tuple[int, int]]) -> FreeVibrations:
+    """Decompose the motions of a molecule.
+
+    group      its point group, matrices in the frame of `positions` about their common centre.
+    positions  (n, 3) Å, exactly of that symmetry, the centre at the origin.
+    bonds      pairs of atoms.
+
+    Raises InconsistencyError when the positions do not have the symmetry of the group.
+    """
+    permutations = permutations_of(group, positions)
+    traces = np.trace(group.matrices, axis1=1, axis2=2)
+    fixed = (permutations == np.arange(len(positions))).sum(axis=1)
+    everything = reduce_characters(group.species, fixed * traces)
+    translations = reduce_characters(group.species, traces)
+    rotations = reduce_characters(group.species, rotation_characters(group, positions))
+    internal = in_order(group, subtracted(everything, added(translations, rotations)))
+    return FreeVibrations(internal, _by_kind(group, positions, bonds, permutations, internal), translations, rotations)
+
+
+def rotation_characters(group: PointGroup, positions: Floats) -> Floats:
+    """Characters of the rotations that a molecule of this shape can make: three, two if linear, none if an atom."""
+    matrices = group.matrices
+    signs = determinants(matrices)
+    axial = np.trace(matrices, axis1=1, axis2=2) * signs
+    spread = np.linalg.svd(positions - positions.mean(axis=0), full_matrices=False)
+    if spread[1][0] < 1e-6:
+        return np.zeros(len(matrices))
+    if spread[1][1] < 1e-6 * spread[1][0]:
+        along = spread[2][0]
+        return np.asarray(axial - signs * (matrices @ along @ along))
+    return axial
+
+
+def permutations_of(group: PointGroup, positions: Floats) -> Integers:
+    """(g, n) the atom to which each operation takes each atom.
+
+    Raises InconsistencyError when an image lies at no atom.
+    """
+    images = np.einsum("gij,nj->gni", group.matrices, positions)
+    distance = np.linalg.norm(images[:, :, None] - positions[None, None], axis=3)
+    if distance.min(axis=2).max() > 1e-3:
+        raise InconsistencyError(
+            f"A molecule's atoms are {distance.min(axis=2).max():.3f} Å away from the symmetry {group.schoenflies}.",
+            "Its positions must be idealised before its vibrations are counted.",
+        )
+    return np.asarray(distance.argmin(axis=2), dtype=np.int64)
+
+
+def _by_kind(
+    group: PointGroup, positions: Floats, bonds: Sequence[tuple[int, int]], permutations: Integers,
+    internal: Multiplicities,
+) -> dict[str, Multiplicities]:  # fmt: skip
+    near = neighbours(len(positions), bonds)
+    makers = (
+        lambda: stretches(positions, bonds),
+        lambda: bends(positions, near),
+        lambda: out_of_plane_bends(positions, near),
+        lambda: torsions(positions, bonds, near),
+    )
+    kinds: dict[str, Multiplicities] = {}
+    rest, basis, wanted = internal, np.zeros((0, positions.size)), _size(group, internal)
+    for kind, make in zip(KINDS, makers, strict=False):
+        if len(basis) == wanted:
+            break
+        fresh = _new_directions(basis, make())
+        if len(fresh):
+            found = reduce_characters(group.species, _subspace_characters(group, permutations, fresh))
+            kinds[kind], rest = in_order(group, found), subtracted(rest, found)
+            basis = np.vstack([basis, fresh])
+    if rest:
+        kinds[KINDS[-1]] = in_order(group, rest)
+    return kinds
+
+
+def _size(group: PointGroup, parts: Multiplicities) -> int:
+    sizes = {one.label: one.dimension for one in group.species}
+    return sum(sizes[label] * count for label, count in parts.items())
+
+
+def _new_directions(basis: Floats, rows: Floats) -> Floats:
+    """Orthonormal basis of what `rows` span beyond an orthonormal `basis`."""
+    if not len(rows):
+        return rows
+    rest = rows - (rows @ basis.T) @ basis
+    squares, vectors = np.linalg.eigh(rest.T @ rest)
+    return np.asarray(vectors.T[squares > (_INDEPENDENT * np.linalg.norm(rows, axis=1).max()) ** 2])
+
+
+def _subspace_characters(group: PointGroup, permutations: Integers, basis: Floats) -> Floats:
+    """Traces of the operations on the space of orthonormal displacement vectors `basis` (m, 3n)."""
+    vectors = basis.reshape(len(basis), -1, 3)
+    characters = np.zeros(len(group))
+    for members in group.classes:
+        first = members[0]
+        moved = vectors @ group.matrices[first].T
+        characters[list(members)] = np.einsum("mni,mni->", vectors[:, permutations[first]], moved)
+    return characters
