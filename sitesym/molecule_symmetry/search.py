@@ -28,9 +28,10 @@ DEFAULT_TOLERANCE = 0.25
 """Å. Five times the scatter (0.05 Å in each coordinate) up to which a group should be recovered.
 
 Measured on the 89 molecules of the tests at random scatters: 1780 of 1780 right at 0.02 Å, 3556 of 3560 at 0.05 Å
-(ammonia, 0.29 Å from planar, was once taken for planar; three were told too low), three in ten at 0.1 Å, where a tolerance of
-0.5 Å recovers 97 %. It cannot see everything: one atom out of place by 0.3 Å is noticed in 9 cases of 10 when it is one
-of six alike or more, but hardly ever as one of two, for symmetrising moves each of them by 0.15 Å, no more than scatter.
+(ammonia, 0.29 Å from planar, was once taken for planar; three were told too low), three in ten at 0.1 Å, where a
+tolerance of 0.5 Å recovers 97 %. It cannot see everything: one atom out of place by 0.3 Å is noticed in 9 cases of 10
+when it is one of six alike or more, but hardly ever as one of two, for symmetrising moves each of them by 0.15 Å, no
+more than scatter.
 """
 
 REACH_FACTOR = 1.5
