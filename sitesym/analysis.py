@@ -5,10 +5,12 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import cached_property
 
+from sitesym.bonding import BondRules
 from sitesym.cautions import cautions_of
 from sitesym.decomposition import checked_sum, site_contribution
 from sitesym.groups.point_group import PointGroup
 from sitesym.groups.subduction import Multiplicities, reduce_characters, subtracted
+from sitesym.molecular import MolecularAnalysis, analyse_molecules
 from sitesym.selection import Activity, activities, vector_species
 from sitesym.structure import OpenQuestion, Structure
 from sitesym.symmetry.axes import SettingLabels, describe_axes, orthorhombic_labels
@@ -94,6 +96,7 @@ class Analysis:
     cautions  what to know before believing it, the most serious first.
     axes      a sentence on the Cartesian axes of all labels and tensors.
     scan      how the space group depends on the tolerance; None when it was not asked for.
+    molecular molecules and complex ions followed into the crystal; None when it was not asked for.
     """
 
     structure: Structure
@@ -103,6 +106,7 @@ class Analysis:
     totals: Totals
     axes: str
     scan: Scan | None
+    molecular: MolecularAnalysis | None
     cautions: tuple[OpenQuestion, ...]
 
     def __repr__(self) -> str:
@@ -156,6 +160,9 @@ def analyse(
     axes: str = "auto",
     setting: str | None = None,
     scan: bool = True,
+    molecules: bool = True,
+    bonds: BondRules | None = None,
+    molecule_tolerance: float | None = None,
 ) -> Analysis:
     """Analyse the zone-centre vibrations of a crystal.
 
@@ -164,6 +171,8 @@ def analyse(
                "standard" insist on one.
     setting    Hermann-Mauguin symbol of a setting of the space group, to label and orient everything in it.
     scan       also search at other tolerances, to tell how far the space group can be trusted.
+    molecules  also find molecules and complex ions and follow their vibrations; `bonds` is the user's word on what is
+               bonded, `molecule_tolerance` (Å) serves the free molecules' own point groups (see `molecules`).
 
     Raises UsageError for arguments that make no sense, InconsistencyError when two routes to a number disagree.
     """
@@ -172,9 +181,10 @@ def analyse(
     whole = checked_sum(symmetry, (row.contribution for row in sites))
     species = _species_rows(symmetry, whole)
     scanned = scan_tolerance(symmetry) if scan else None
+    molecular = analyse_molecules(symmetry, whole, bonds, molecule_tolerance) if molecules else None
     return Analysis(
         structure, symmetry, sites, species, _totals(symmetry, species), describe_axes(symmetry),
-        scanned, cautions_of(structure, symmetry, scanned),
+        scanned, molecular, cautions_of(structure, symmetry, scanned),
     )  # fmt: skip
 
 

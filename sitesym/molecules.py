@@ -10,12 +10,19 @@ import numpy as np
 from sitesym.bonding import BondRules, Bonds
 from sitesym.errors import InconsistencyError
 from sitesym.groups.operation import Floats, Integers
+from sitesym.groups.kind import Family, Kind
 from sitesym.groups.point_group import PointGroup
+from sitesym.known_units import known_groups
 from sitesym.molecule_frame import molecule_group
 from sitesym.molecule_symmetry import DEFAULT_TOLERANCE, MoleculeSymmetry, find_operations
 from sitesym.symmetry.crystal import CrystalSymmetry
 from sitesym.symmetry.primitive import PrimitiveCell, moved, primitive_cell
 from sitesym.units import Unit, bonds_of, find_units
+
+KNOWN_UNIT_TOLERANCE = 0.6
+"""Å. How far a unit may be distorted and still be taken for the tabulated ion of its composition (SiO4 of zircon: 0.3)."""
+
+_BIAXIAL = (Kind(Family.CNV, 2), Kind(Family.DN, 2), Kind(Family.DNH, 2))
 
 LocalBonds = tuple[tuple[int, int], ...]
 
@@ -66,11 +73,13 @@ class UnitSet:
 
 
 def units_of_crystal(
-    symmetry: CrystalSymmetry, rules: BondRules | None = None, tolerance: float = DEFAULT_TOLERANCE
+    symmetry: CrystalSymmetry, rules: BondRules | None = None, tolerance: float | None = None
 ) -> tuple[UnitSet, ...]:
     """All units of a crystal, one set for each kind of symmetry-equivalent ones, in the order of their first atoms.
 
-    rules      the user's word on bonds and units; tolerance Å for the free molecules' own symmetry.
+    rules      the user's word on bonds and units.
+    tolerance  Å for the free molecules' own symmetry. By default that of `molecule_symmetry`, and a unit whose
+               composition is tabulated may deviate more (`KNOWN_UNIT_TOLERANCE`) from a tabulated group.
 
     Raises UsageError for rules that name what is not there, InconsistencyError when symmetry does not carry units
     into units.
@@ -102,7 +111,7 @@ def _owners(units: Sequence[Unit], count: int) -> Integers:
 
 def _unit_set(
     symmetry: CrystalSymmetry, cell: PrimitiveCell, bonds: Bonds, units: Sequence[Unit], owner: Integers,
-    index: int, members: list[int], tolerance: float,
+    index: int, members: list[int], tolerance: float | None,
 ) -> UnitSet:  # fmt: skip
     unit = units[index]
     atoms = np.concatenate([units[member].atoms for member in members])
@@ -121,6 +130,7 @@ def _unit_set(
     free = None
     if len(unit.atoms) > 1:
         free = _free_molecule(cell, bonds, unit, points @ cell.structure.lattice, site_group, tolerance)
+        site_group = _in_molecule_axes(site_group, free)
     return UnitSet(unit, len(members), kept, site_group, centre, atoms, free)
 
 
@@ -148,12 +158,25 @@ def _stabiliser(
 
 
 def _free_molecule(
-    cell: PrimitiveCell, bonds: Bonds, unit: Unit, points: Floats, site_group: PointGroup, tolerance: float
+    cell: PrimitiveCell, bonds: Bonds, unit: Unit, points: Floats, site_group: PointGroup, tolerance: float | None
 ) -> FreeMolecule:
     elements = tuple(cell.structure.elements[atom] for atom in unit.atoms)
     labels = tuple(cell.structure.sites[atom].label for atom in unit.atoms)
-    required = list(site_group.matrices)
-    return free_molecule(elements, labels, points, _local_bonds(bonds, unit), tolerance, required)
+    required, local = list(site_group.matrices), _local_bonds(bonds, unit)
+    found = free_molecule(elements, labels, points, local, tolerance or DEFAULT_TOLERANCE, required)
+    expected = known_groups(unit.formula)
+    if tolerance is not None or not expected or found.group.schoenflies in expected:
+        return found
+    wider = free_molecule(elements, labels, points, local, KNOWN_UNIT_TOLERANCE, required)
+    return wider if wider.group.schoenflies in expected else found
+
+
+def _in_molecule_axes(site_group: PointGroup, free: FreeMolecule) -> PointGroup:
+    """Where B1, B2 and B3 of a site cannot follow the crystal's axes they follow those of the molecule."""
+    along = np.abs(site_group.frame).max(axis=1) > 1 - 1e-6
+    if site_group.kind not in _BIAXIAL or along.all() or free.symmetry.is_linear:
+        return site_group
+    return PointGroup.of(site_group.matrices, free.group.frame)
 
 
 def free_molecule(

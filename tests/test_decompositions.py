@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 import pytest
-from crystals import of_entry, reference
+from literature import of_entry, reference
 
 from sitesym.analysis import analyse
 

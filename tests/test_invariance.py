@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from crystals import of_entry, reference
+from literature import of_entry, reference
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 

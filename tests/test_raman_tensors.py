@@ -7,7 +7,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from crystals import reference
+from literature import reference
 
 from sitesym.groups.operation import closure
 from sitesym.groups.point_group import PointGroup

@@ -1,0 +1,204 @@
+"""The molecular side of an analysis: every unit followed into the crystal, named, oriented, and checked against the atoms."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from sitesym.bonding import BondRules
+from sitesym.correlation import UnitCorrelation, check_against_sites, correlate
+from sitesym.decomposition import site_contribution
+from sitesym.groups.operation import Floats
+from sitesym.groups.subduction import Multiplicities, added, in_order, subtracted
+from sitesym.known_units import KnownVibration
+from sitesym.molecules import FreeMolecule, UnitSet, units_of_crystal
+from sitesym.selection import vector_species
+from sitesym.symmetry.crystal import CrystalSymmetry
+from sitesym.symmetry.site_symbol import oriented_symbol
+from sitesym.symmetry.wyckoff import wyckoff_letter
+from sitesym.units import Unit
+from sitesym.vibration_names import known_vibrations
+
+
+@dataclass(frozen=True, slots=True)
+class AxisRelation:
+    """How one axis of the free molecule lies in the crystal.
+
+    name       of the molecular axis: "z" (the main axis), "x" or "y".
+    direction  (3,) unit vector in the Cartesian axes of the report.
+    nearest    the crystal axis (a, b, c, a*, b*, c*) closest to it, and the angle between the two lines in degrees.
+    """
+
+    name: str
+    direction: tuple[float, float, float]
+    nearest: str
+    angle: float
+
+
+@dataclass(frozen=True, eq=False)
+class MoleculeRow:
+    """One set of equivalent molecules or complex ions.
+
+    wyckoff, multiplicity  position of their centres in the conventional cell.
+    symbol                 oriented Hermann-Mauguin symbol of the site group.
+    names                  for each entry of `correlation.vibrations` the usual names and free wavenumbers, if known.
+    source                 where those come from, or "".
+    orientation            the molecule's axes in the crystal.
+    """
+
+    correlation: UnitCorrelation
+    wyckoff: str
+    multiplicity: int
+    symbol: str
+    names: tuple[tuple[KnownVibration, ...], ...]
+    source: str
+    orientation: tuple[AxisRelation, ...]
+
+    @property
+    def units(self) -> UnitSet:
+        """The units themselves."""
+        return self.correlation.units
+
+    @property
+    def free(self) -> FreeMolecule:
+        """The representative as a free molecule."""
+        assert self.units.free is not None
+        return self.units.free
+
+    @property
+    def formula(self) -> str:
+        """Formula in Hill order."""
+        return self.units.unit.formula
+
+    def __repr__(self) -> str:
+        groups = f"{self.free.group.schoenflies} on {self.symbol}"
+        return f"MoleculeRow({self.units.count} {self.formula}, {groups})"
+
+
+@dataclass(frozen=True, slots=True)
+class Origin:
+    """Where the optic modes of one species come from.
+
+    translational excludes the acoustic branches; `framework` counts the modes of the atoms of nets, layers and chains.
+    """
+
+    translational: int
+    librational: int
+    internal: int
+    framework: int
+
+
+@dataclass(frozen=True, eq=False)
+class MolecularAnalysis:
+    """All units of a crystal.
+
+    molecules  sets of molecules and complex ions; atoms single-atom units; nets chains, layers and nets.
+    origins    species of the factor group -> origin of its optic modes.
+    """
+
+    molecules: tuple[MoleculeRow, ...]
+    atoms: tuple[UnitCorrelation, ...]
+    nets: tuple[Unit, ...]
+    origins: dict[str, Origin]
+
+
+def analyse_molecules(
+    symmetry: CrystalSymmetry,
+    whole: Multiplicities,
+    rules: BondRules | None = None,
+    tolerance: float | None = None,
+) -> MolecularAnalysis:
+    """Find the units of a crystal and correlate their motions.
+
+    whole  species of all 3N displacements by the atomic sites: the sum over all units must equal it.
+
+    Raises UsageError for rules that name what is not there, InconsistencyError when the sums differ.
+    """
+    sets = units_of_crystal(symmetry, rules, tolerance)
+    finite = [correlate(symmetry.factor_group, one) for one in sets if one.site_group is not None]
+    nets = [one for one in sets if one.site_group is None]
+    framework = _framework(symmetry, nets)
+    check_against_sites(symmetry.factor_group, finite, framework, whole)
+    molecules = tuple(_row(symmetry, one) for one in finite if one.units.is_molecule)
+    atoms = tuple(one for one in finite if not one.units.is_molecule)
+    origins = _origins(symmetry, finite, framework)
+    return MolecularAnalysis(molecules, atoms, tuple(one.unit for one in nets), origins)
+
+
+def _framework(symmetry: CrystalSymmetry, nets: list[UnitSet]) -> Multiplicities:
+    """Species of the atoms of nets, by their atomic sites."""
+    inside = {atom for net in nets for atom in net.atoms.tolist()}
+    orbits = (orbit for orbit in symmetry.orbits if orbit.atoms[0] in inside)
+    return in_order(symmetry.factor_group, added(*(site_contribution(symmetry, orbit) for orbit in orbits)))
+
+
+def _origins(
+    symmetry: CrystalSymmetry, finite: list[UnitCorrelation], framework: Multiplicities
+) -> dict[str, Origin]:
+    """The acoustic branches are taken from the translations, or from the framework where there are not enough."""
+    translations = added(*(one.translations.crystal for one in finite))
+    librations = added(*(one.librations.crystal for one in finite))
+    internal = added(*(one.internal for one in finite))
+    acoustic = vector_species(symmetry.factor_group)
+    if framework and not finite:
+        framework, acoustic = subtracted(framework, acoustic), {}
+    elif not translations:
+        acoustic = {}
+    return {
+        one.label: Origin(
+            translations.get(one.label, 0) - acoustic.get(one.label, 0),
+            librations.get(one.label, 0),
+            internal.get(one.label, 0),
+            framework.get(one.label, 0),
+        )
+        for one in symmetry.factor_group.species
+    }
+
+
+def _row(symmetry: CrystalSymmetry, correlation: UnitCorrelation) -> MoleculeRow:
+    units = correlation.units
+    free, site_group = units.free, units.site_group
+    assert free is not None
+    assert site_group is not None
+    names, source = known_vibrations(units.unit.formula, free.group.schoenflies, correlation.vibrations)
+    return MoleculeRow(
+        correlation,
+        _letter(symmetry, units),
+        units.count * len(symmetry.cell.centring_vectors),
+        oriented_symbol(site_group, symmetry.lattice, symmetry.number),
+        names,
+        source,
+        _orientation(symmetry, free),
+    )
+
+
+def _letter(symmetry: CrystalSymmetry, units: UnitSet) -> str:
+    """Wyckoff letter of the centre, put exactly on its site: the mean of its images under the site operations."""
+    assert units.stabiliser is not None
+    kept = units.stabiliser
+    images = symmetry.rotations[kept] @ units.centre + symmetry.translations[kept]
+    away = images - units.centre
+    vectors = symmetry.cell.centring_vectors
+    options = away[:, None] - vectors[None]
+    residue = options - np.rint(options)
+    nearest = np.linalg.norm(residue @ symmetry.lattice, axis=2).argmin(axis=1)
+    exact = units.centre + residue[np.arange(len(kept)), nearest].mean(axis=0)
+    return wyckoff_letter(symmetry, exact)
+
+
+def _orientation(symmetry: CrystalSymmetry, free: FreeMolecule) -> tuple[AxisRelation, ...]:
+    """z first, then x and y; for linear molecules the axis only."""
+    order = (2,) if free.symmetry.is_linear else (2, 0, 1)
+    return tuple(_relation(symmetry.lattice, "xyz"[k], free.group.frame[k]) for k in order)
+
+
+def _relation(lattice: Floats, name: str, direction: Floats) -> AxisRelation:
+    reciprocal = np.linalg.inv(lattice).T
+    lines = np.vstack([lattice, reciprocal])
+    lines = lines / np.linalg.norm(lines, axis=1)[:, None]
+    closeness = np.round(np.abs(lines @ direction), 9)
+    best = int(np.argmax(closeness))
+    nearest = ("a", "b", "c", "a*", "b*", "c*")[best]
+    x, y, z = (float(value) for value in direction)
+    return AxisRelation(name, (x, y, z), nearest, float(np.degrees(np.arccos(min(closeness[best], 1.0)))))
