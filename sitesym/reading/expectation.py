@@ -35,11 +35,10 @@ class Expectation:
     def cell(self, composition: Mapping[str, float]) -> dict[str, float]:
         """Element -> atoms expected in a cell of this composition, hydrogen isotopes together as H; {} when unknown.
 
-        Where Z is unknown the heavier atoms tell it.
+        Where Z is unknown the heavier atoms tell it; where they have nothing in common with the formula it is 1.
         """
-        formula = pooled(self.formula)
-        units = self.units or self.units_of(composition)
-        return {element: count * units for element, count in formula.items()} if units else {}
+        units = self.units or self.units_of(composition) or 1.0
+        return {element: count * units for element, count in pooled(self.formula).items()}
 
     def units_of(self, composition: Mapping[str, float]) -> float:
         """Formula units by the atoms other than hydrogen: the number on which most elements agree, whole if possible.

@@ -47,6 +47,11 @@ class _Place:
     def occupancy(self) -> float:
         return sum(self.occupants.values())
 
+    @property
+    def element(self) -> str:
+        """The first, for a listed atom the only occupant."""
+        return next(iter(self.occupants))
+
 
 def assemble(listing: Listing, operations: Operations) -> Content:
     """Expand the listing and merge what coincides.
@@ -55,20 +60,17 @@ def assemble(listing: Listing, operations: Operations) -> Content:
     """
     orbits = expand(listing, operations)
     contacts = _contacts(listing, orbits, SAME_ATOM if len(operations) > 1 else SAME_POINT)
-    copies_listed = _lists_copies(contacts, listing)
-    places: dict[int, _Place] = {}
-    duplicates: list[tuple[int, int]] = []
+    merger = _Merger(listing, orbits, _lists_copies(contacts, listing))
     for row in range(len(listing)):
-        occupant = {listing.elements[row]: float(orbits.occupancies[row])}
-        here = _Place(row, occupant, listing.groups[row], [row])
-        host = _host(here, places, contacts.get(row, {}), listing, orbits, copies_listed, duplicates)
-        if host is None:
-            places[row] = here
-    chosen = np.isin(orbits.owners, list(places))
-    made = {row: _site(place, listing) for row, place in places.items()}
+        merger.place(row, contacts.get(row, {}))
+    chosen = np.isin(orbits.owners, list(merger.places))
+    made = {row: _site(place, listing) for row, place in merger.places.items()}
     sites = tuple(made[int(row)] for row in orbits.owners[chosen])
-    repeated = _duplicate_question(duplicates, listing, len(operations) > 1)
-    questions = repeated + _excess_question(list(places.values()), listing)
+    questions = (
+        *_duplicate_question(merger.duplicates, listing, len(operations) > 1),
+        *_addition_question(merger.additions, listing),
+        *_excess_question(list(merger.places.values()), listing),
+    )
     return Content(orbits.points[chosen], sites, questions, tuple(orbits.counts.tolist()))
 
 
@@ -85,34 +87,6 @@ def _contacts(listing: Listing, orbits: Orbits, cutoff: float) -> dict[int, dict
     return found
 
 
-def _host(
-    here: _Place,
-    places: dict[int, _Place],
-    contacts: dict[int, float],
-    listing: Listing,
-    orbits: Orbits,
-    copies_listed: bool,
-    duplicates: list[tuple[int, int]],
-) -> _Place | None:
-    """The place that takes this atom in, None when it stands by itself."""
-    for row, distance in sorted(contacts.items(), key=lambda item: item[1]):
-        place = places.get(row)
-        if place is None:
-            continue
-        if _is_duplicate(here, place, distance, copies_listed, listing):
-            duplicates.append((here.row, row))
-            return place
-        same_size = orbits.counts[here.row] == orbits.counts[row]
-        if same_size and _shares(here, place, distance):
-            (element, occupancy), *_ = here.occupants.items()
-            place.occupants[element] = place.occupants.get(element, 0.0) + occupancy
-            place.rows.append(here.row)
-            place.group = place.group if place.group == here.group else ""
-            return place
-        _refuse_collision(here, place, listing)
-    return None
-
-
 def _lists_copies(contacts: dict[int, dict[int, float]], listing: Listing) -> bool:
     """The file lists symmetry copies as atoms of their own: some full atom falls on another of its element."""
     full = listing.occupancies >= FULL
@@ -123,62 +97,103 @@ def _lists_copies(contacts: dict[int, dict[int, float]], listing: Listing) -> bo
     )
 
 
-def _is_duplicate(here: _Place, place: _Place, distance: float, copies_listed: bool, listing: Listing) -> bool:
-    """The same atom listed again: the same element and disorder group, not two parts of one position.
+@dataclass(slots=True)
+class _Merger:
+    """The places found so far, by the row that heads them, and the (later, earlier) rows that were joined.
 
-    Partly occupied atoms that fall on each other add up, as a refinement counts them, unless that makes more than
-    one atom, the name is the same, or the file lists symmetry copies of its full atoms too.
+    `copies_listed` tells that the file lists symmetry copies as atoms of their own.
     """
-    (element, occupancy), *_ = here.occupants.items()
-    if element not in place.occupants or not _same_group(here, place):
-        return False
-    if min(occupancy, place.occupants[element]) >= FULL:
+
+    listing: Listing
+    orbits: Orbits
+    copies_listed: bool
+    places: dict[int, _Place] = field(default_factory=dict)
+    duplicates: list[tuple[int, int]] = field(default_factory=list)
+    additions: list[tuple[int, int]] = field(default_factory=list)
+
+    def place(self, row: int, contacts: dict[int, float]) -> None:
+        """Join a listed atom to the nearest place that takes it in, or make it a place of its own."""
+        occupancy = float(self.orbits.occupancies[row])
+        here = _Place(row, {self.listing.elements[row]: occupancy}, self.listing.groups[row], [row])
+        for head, distance in sorted(contacts.items(), key=lambda item: item[1]):
+            if head in self.places and self._joined(here, self.places[head], distance):
+                return
+        self.places[row] = here
+
+    def _joined(self, here: _Place, place: _Place, distance: float) -> bool:
+        """Try to join; raises when that is impossible and the atoms cannot stand apart either."""
+        if self._is_duplicate(here, place, distance):
+            self.duplicates.append((here.row, place.row))
+            return True
+        same_size = self.orbits.counts[here.row] == self.orbits.counts[place.row]
+        if not same_size or not _shares(here, place, distance):
+            self._refuse_collision(here, place)
+            return False
+        if here.element in place.occupants:
+            self.additions.append((here.row, place.row))
+        place.occupants[here.element] = place.occupants.get(here.element, 0.0) + here.occupancy
+        place.rows.append(here.row)
+        place.group = place.group if place.group == here.group else ""
         return True
-    alike = any(
-        listing.elements[row] == element and abs(listing.occupancies[row] - listing.occupancies[here.row]) < ROUNDING
-        for row in place.rows
-    )
-    too_much = place.occupancy + occupancy > 1 + ROUNDING
-    copy = copies_listed and not _listed_together(here, place, listing)
-    return distance < SAME_POINT and alike and (too_much or copy or _same_name(here, place, listing))
+
+    def _is_duplicate(self, here: _Place, place: _Place, distance: float) -> bool:
+        """The same atom listed again: the same element and disorder group, not two parts of one position.
+
+        Partly occupied atoms that fall on each other add up, as a refinement counts them, unless that makes more than
+        one atom, the name is the same, or the file lists symmetry copies of its full atoms too.
+        """
+        if here.element not in place.occupants or not _same_group(here, place):
+            return False
+        if min(here.occupancy, place.occupants[here.element]) >= FULL:
+            return True
+        too_much = place.occupancy + here.occupancy > 1 + ROUNDING
+        copy = self.copies_listed and not self._listed_together(here, place)
+        again = too_much or copy or self._same_name(here, place)
+        return distance < SAME_POINT and again and self._alike(here, place)
+
+    def _alike(self, here: _Place, place: _Place) -> bool:
+        """Some atom of the place has the same element and occupancy."""
+        elements, occupancies = self.listing.elements, self.listing.occupancies
+        return any(
+            elements[row] == here.element and abs(occupancies[row] - occupancies[here.row]) < ROUNDING
+            for row in place.rows
+        )
+
+    def _listed_together(self, here: _Place, place: _Place) -> bool:
+        """The file gives both the same coordinates, before any symmetry operation."""
+        difference = self.listing.fractional[place.rows] - self.listing.fractional[here.row]
+        return bool((np.linalg.norm(difference @ self.listing.lattice, axis=1) < SAME_POINT).any())
+
+    def _same_name(self, here: _Place, place: _Place) -> bool:
+        labels, types = self.listing.labels, self.listing.types
+        name = labels[here.row], types[here.row]
+        return any(name == (labels[row], types[row]) for row in place.rows)
+
+    def _refuse_collision(self, here: _Place, place: _Place) -> None:
+        """Unlike atoms, both fully there, on one point."""
+        both_full = min(here.occupancy, place.occupancy) >= FULL
+        if not both_full or not _same_group(here, place) or set(here.occupants) == set(place.occupants):
+            return
+        labels, elements = self.listing.labels, self.listing.elements
+        one, two = (f"{printable(labels[row], 40)} ({elements[row]})" for row in (place.row, here.row))
+        where = ", ".join(f"{value:.4f}" for value in self.listing.fractional[here.row])
+        raise NotAStructureError(
+            f"{one} and {two} are both fully there and lie on one point, near {where}.",
+            "Correct the coordinates, or give the occupancies if the site is mixed.",
+        )
 
 
 def _shares(here: _Place, place: _Place, distance: float) -> bool:
     """Part of one position: room is left there, or the file puts both on the very same point."""
-    (element, occupancy), *_ = here.occupants.items()
-    fits = occupancy + place.occupancy <= 1 + 5 * ROUNDING
-    if element in place.occupants or not _same_group(here, place):
+    fits = here.occupancy + place.occupancy <= 1 + 5 * ROUNDING
+    if here.element in place.occupants or not _same_group(here, place):
         return distance < SAME_POINT and fits
-    both_full = min(occupancy, place.occupancy) >= FULL
+    both_full = min(here.occupancy, place.occupancy) >= FULL
     return fits or (distance < SAME_POINT and not both_full)
 
 
 def _same_group(here: _Place, place: _Place) -> bool:
     return here.group == place.group or "" in (here.group, place.group)
-
-
-def _listed_together(here: _Place, place: _Place, listing: Listing) -> bool:
-    """The file gives both the same coordinates, before any symmetry operation."""
-    difference = listing.fractional[place.rows] - listing.fractional[here.row]
-    return bool((np.linalg.norm(difference @ listing.lattice, axis=1) < SAME_POINT).any())
-
-
-def _same_name(here: _Place, place: _Place, listing: Listing) -> bool:
-    name = listing.labels[here.row], listing.types[here.row]
-    return any(name == (listing.labels[row], listing.types[row]) for row in place.rows)
-
-
-def _refuse_collision(here: _Place, place: _Place, listing: Listing) -> None:
-    if min(here.occupancy, place.occupancy) < FULL or not _same_group(here, place):
-        return
-    if set(here.occupants) == set(place.occupants):
-        return
-    one, two = (f"{printable(listing.labels[row], 40)} ({listing.elements[row]})" for row in (place.row, here.row))
-    where = ", ".join(f"{value:.4f}" for value in listing.fractional[here.row])
-    raise NotAStructureError(
-        f"{one} and {two} are both fully there and lie on one point, near {where}.",
-        "Correct the coordinates, or give the occupancies if the site is mixed.",
-    )
 
 
 def _site(place: _Place, listing: Listing) -> Site:
@@ -193,8 +208,22 @@ def _duplicate_question(duplicates: list[tuple[int, int]], listing: Listing, mov
     return (
         OpenQuestion(
             "duplicates_merged",
-            f"{len(duplicates)} of the {counted(len(listing), 'listed atom')} repeat others that are listed already"
+            f"{len(duplicates)} of the {counted(len(listing), 'listed atom')} "
+            f"{'repeats' if len(duplicates) == 1 else 'repeat'} others listed already"
             f"{', symmetry copies included' if moved else ''} (such as {late}, of {early}); each was counted once.",
+        ),
+    )
+
+
+def _addition_question(additions: list[tuple[int, int]], listing: Listing) -> tuple[OpenQuestion, ...]:
+    if not additions:
+        return ()
+    late, early = (printable(listing.labels[row], 40) for row in additions[0])
+    return (
+        OpenQuestion(
+            "occupancies_added",
+            f"{counted(len(additions), 'partly occupied atom')} {'shares' if len(additions) == 1 else 'share'} the place "
+            f"of another of the same element (such as {late}, with {early}): the occupancies were added up.",
         ),
     )
 

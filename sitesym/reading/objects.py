@@ -149,5 +149,6 @@ def _isotope(symbol: str, mass: float) -> str:
 
 
 def _symbol(kind: Any) -> str:
-    """The bare symbol of a pymatgen element, ion or dummy."""
-    return str(getattr(kind, "symbol", kind))
+    """The bare symbol of a pymatgen element, ion or dummy; isotopes of hydrogen go by name there, not by symbol."""
+    element = getattr(kind, "element", None) or kind
+    return str(getattr(element, "name", None) or getattr(kind, "symbol", kind))

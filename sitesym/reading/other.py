@@ -30,24 +30,23 @@ def read_other(given: Given, format: str | None, frame: str | int | None, whole_
 
     Raises ReadError when ASE cannot read it, NotAStructureError when it is a molecule or an asymmetric unit.
     """
-    atoms, name, questions = atoms_in(given, format, frame)
-    asymmetric = _ASYMMETRIC.get(name)
-    if asymmetric is not None and not whole_cell and not given.is_binary and asymmetric.search(given.text):
-        raise NotAStructureError(
-            f"{given.name} lists the asymmetric unit only ({name}), which is not expanded here.",
-            "Convert it to CIF; or say with --whole-cell (whole_cell=True) that it lists every atom of the cell.",
-        )
+    atoms, name, questions = atoms_in(given, format, frame, whole_cell)
     return structure_of_atoms(atoms, given.name, name, questions)
 
 
 def atoms_in(
-    given: Given, format: str | None = None, frame: str | int | None = None
+    given: Given, format: str | None = None, frame: str | int | None = None, whole_cell: bool = False
 ) -> tuple[Any, str, tuple[OpenQuestion, ...]]:
-    """The `ase.Atoms` in a file, the name of its format, and what is doubtful about the choice."""
+    """The `ase.Atoms` in a file, the name of its format, and what is doubtful about the choice.
+
+    Raises NotAStructureError when the file lists an asymmetric unit, unless `whole_cell` vouches for it.
+    """
     with tempfile.TemporaryDirectory(prefix="sitesym-") as folder, warnings.catch_warnings():
         warnings.simplefilter("ignore")
         path = _path(given, Path(folder))
         name = format or _recognise(path, given)
+        if not whole_cell:
+            _refuse_asymmetric_unit(given, name)
         frames = _frames(path, name, given)
     if not frames:
         raise NotAStructureError(f"{given.name}, read as {name}, holds no structure.", "Check what was saved.")
@@ -58,6 +57,15 @@ def atoms_in(
         message = f"The file holds {len(frames)} structures, such as steps of a calculation; this is the last."
         questions = (OpenQuestion("several_frames", message),)
     return frames[-1], name, questions
+
+
+def _refuse_asymmetric_unit(given: Given, name: str) -> None:
+    mark = _ASYMMETRIC.get(name)
+    if mark is not None and not given.is_binary and mark.search(given.text):
+        raise NotAStructureError(
+            f"{given.name} lists the asymmetric unit only ({name}), which is not expanded here.",
+            "Convert it to CIF; or say with --whole-cell (whole_cell=True) that it lists every atom of the cell.",
+        )
 
 
 def _path(given: Given, folder: Path) -> Path:
@@ -72,13 +80,13 @@ def _path(given: Given, folder: Path) -> Path:
 
 
 def _recognise(path: Path, given: Given) -> str:
-    from ase.io.formats import UnknownFileTypeError, filetype
+    from ase.io.formats import UnknownFileTypeError, filetype, ioformats
 
     try:
-        name = str(filetype(str(path), guess=False))
+        name = str(filetype(str(path)))
     except (UnknownFileTypeError, OSError, ValueError):
         name = ""
-    if not name or name in _NEVER:
+    if name not in ioformats or name in _NEVER:
         raise ReadError(
             f"The format of {given.name} is not recognised: it is no CIF, no POSCAR and none that ASE knows.",
             "Name it with --format, if it is one of these; else convert it to CIF.",

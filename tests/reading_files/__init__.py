@@ -1,0 +1,1 @@
+"""Texts of structure files, written for the tests of the readers."""
