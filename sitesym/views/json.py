@@ -32,8 +32,8 @@ def render(analysis: Analysis) -> str:
 def document(analysis: Analysis) -> Document:
     """The document as plain dictionaries, lists, strings, numbers, booleans and None.
 
-    Where bonded units are not told apart, `molecules` is empty and the species' `translational`, `librational` and
-    `internal` are None: not counted, which is not zero.
+    The molecular part of an analysis is not in the document yet: `molecules` is empty, and the species'
+    `translational`, `librational` and `internal` are None, which means not counted and not zero.
     """
     return {
         "schema": SCHEMA,
@@ -73,7 +73,11 @@ def _warning(question: OpenQuestion) -> Document:
 
 def _space_group(analysis: Analysis) -> Document:
     symmetry, declared, scan = analysis.symmetry, analysis.structure.declared, analysis.scan
-    stated = {"number": declared.number, "hermann_mauguin": declared.hermann_mauguin, "hall": declared.hall}
+    stated = {
+        "number": declared.number,
+        "hermann_mauguin": declared.hermann_mauguin and _characters(declared.hermann_mauguin),
+        "hall": declared.hall and _characters(declared.hall),
+    }
     return {
         "number": symmetry.number,
         "hermann_mauguin": analysis.space_group,
