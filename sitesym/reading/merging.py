@@ -222,7 +222,7 @@ def _addition_question(additions: list[tuple[int, int]], listing: Listing) -> tu
     return (
         OpenQuestion(
             "occupancies_added",
-            f"{counted(len(additions), 'partly occupied atom')} {'shares' if len(additions) == 1 else 'share'} the place "
+            f"{counted(len(additions), 'partial atom')} {'shares' if len(additions) == 1 else 'share'} the place "
             f"of another of the same element (such as {late}, with {early}): the occupancies were added up.",
         ),
     )
