@@ -1,0 +1,1 @@
+"""Plans of polarized Raman and infrared experiments, made from an analysis."""
