@@ -17,8 +17,8 @@ Bi with anions; F with F and O; see data/bond_chemistry.toml). No single cut-off
    treated as other metals are (organolithium compounds, Grignard reagents).
 5. A contact across a triangle, whose ends lie on either side of an atom bound to both, is none (Zr and Si in zircon).
 6. Other metals, with oxygen and halogens: a contact is a bond unless the anion has a far stronger bond to another
-   element (see `strength`). PtCl6, WO4, TiO2, LiNbO3, spinels: bonds. Fe-O in siderite, Pb-O in PbWO4, Zr-O in zircon,
-   Al-O in garnets: none, the anions belong to CO3, WO4, SiO4.
+   element (see `strength`). PtCl6, WO4, TiO2, LiNbO3, spinels, Al-O in AlPO4: bonds. Fe-O in siderite, Pb-O in PbWO4,
+   Zr-O in zircon, Al-O in garnets: none, the anions belong to CO3, WO4, SiO4.
 7. Other metals, with anything else (C, N, S, P, ...): a contact is a bond. MoS2, GaAs, cyanides, carbonyls.
 8. Complexes. A metal that touches carbon or nitrogen of a ligand, or any atom of an organic one, is a coordination
    centre: its contacts with organic ligands are bonds, and those with inorganic groups (nitrate, sulfate,

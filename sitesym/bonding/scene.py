@@ -7,7 +7,7 @@ from functools import cached_property
 
 import numpy as np
 
-from sitesym.bonding.chemistry import Elements, Kind, listed
+from sitesym.bonding.chemistry import Elements, Kind
 from sitesym.bonding.contacts import Booleans, Contacts, ranges
 from sitesym.structure import Floats, Integers
 
@@ -93,16 +93,6 @@ class Scene:
     def anion_order(self) -> Integers:
         """(n,) place of each atom among the anions, most electronegative first; a large number for all others."""
         return np.asarray(self.elements.order[self.elements.index])
-
-    @cached_property
-    def noble(self) -> Booleans:
-        """(n,) noble-gas atoms."""
-        return self.elements.named(frozenset({"He", "Ne", "Ar", "Kr", "Xe", "Rn"}))
-
-    @cached_property
-    def yl_forming(self) -> Booleans:
-        """(n,) actinides that form linear MO2 groups."""
-        return self.elements.named(listed("yl_forming"))
 
 
 def ratios(elements: Elements, contacts: Contacts) -> Floats:

@@ -29,9 +29,23 @@ GROUP = 0.45
 WEAKER = 0.70
 """A metal below this share of the strongest bond's strength is left out of the group.
 
-It lies between octahedral titanium beside silicon (0.67: the Si3O9 rings of benitoite are units) and tetrahedral
-aluminium beside silicon (0.75: aluminosilicates are one net).
+Octahedral titanium beside silicon has 0.67 (the Si3O9 rings of benitoite are units), zirconium beside phosphorus 0.53,
+zinc and beryllium beside silicon 0.50 (the tetrahedra of willemite and the rings of beryl are units).
 """
+
+FORMER = 0.72
+"""A metal of this strength (0.75: a trivalent one with four neighbours) builds nets together with silicon, phosphorus
+and their like, as the network formers of Zachariasen do (1932, J. Am. Chem. Soc. 54, 3841)."""
+
+WEAKER_FORMER = 0.55
+"""A network former is left out of the group below this share only.
+
+Tetrahedral aluminium has 0.75 beside silicon (aluminosilicates) and 0.60 beside phosphorus (berlinite, built like
+quartz), octahedral niobium beside phosphorus 0.67.
+"""
+
+MULTIPLE = 1.4
+"""Bonds of a metal from this valence on (V=O, Mo=O, U=O) say nothing of its others: each kind has its own mean."""
 
 
 @dataclass(frozen=True, eq=False, slots=True)
@@ -58,7 +72,8 @@ def compare_strengths(scene: Scene, eligible: Booleans) -> Strengths:
     strength = _strengths(scene, own, centre)
     strongest = _strongest_other(scene, centre, anion, strength)
     valence = scene.elements.valence[scene.elements.index[anion]]
-    group = (strongest >= GROUP * valence) & (strength <= WEAKER * strongest)
+    limit = np.where(strength >= FORMER, WEAKER_FORMER, WEAKER)
+    group = (strongest >= GROUP * valence) & (strength <= limit * strongest)
     weaker, share = np.zeros(len(scene.contacts), dtype=bool), np.full(len(scene.contacts), np.nan)
     weaker[use] = group & scene.are(Kind.METAL)[centre]
     share[use] = own / valence
@@ -82,12 +97,14 @@ def _bond_valences(scene: Scene, use: Integers, centre: Integers, anion: Integer
 
 
 def _strengths(scene: Scene, own: Floats, centre: Integers) -> Floats:
-    """Strength of each contact: mean over its central atom, its `own` for actinides that form linear MO2 groups."""
-    number = np.bincount(centre, minlength=scene.n)[centre]
-    total = np.bincount(centre, weights=own, minlength=scene.n)[centre]
+    """Strength of each contact: the mean over its central atom, or over its kind where the atom has multiple bonds."""
+    multiple = (own >= MULTIPLE) & scene.are(Kind.METAL)[centre]
+    kind = 2 * centre + multiple
+    mean = (np.bincount(kind, weights=own) / np.maximum(np.bincount(kind), 1))[kind]
+    total, number = np.bincount(centre, weights=own)[centre], np.bincount(centre)[centre]
     single = scene.elements.single[scene.elements.index[centre]]
     whole = np.where(single, np.maximum(np.round(total), 1), total)
-    return np.where(scene.yl_forming[centre], own, whole / number)
+    return np.where(np.bincount(centre, weights=multiple)[centre] > 0, mean, whole / number)
 
 
 def _strongest_other(scene: Scene, centre: Integers, anion: Integers, strength: Floats) -> Floats:
