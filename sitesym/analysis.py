@@ -124,8 +124,7 @@ class Analysis:
     @property
     def space_group(self) -> str:
         """Hermann-Mauguin symbol in the axes of the report: `R-3c`, `P2_1/c`, `P 1 1 2_1/b` where c is unique."""
-        setting = self.symmetry.setting
-        return setting.full if _needs_directions(self.symmetry) else setting.short.replace(" ", "")
+        return self.symmetry.setting.symbol
 
     @cached_property
     def settings(self) -> tuple[SettingLabels, ...]:
@@ -224,7 +223,3 @@ def _totals(symmetry: CrystalSymmetry, species: tuple[SpeciesRow, ...]) -> Total
         count([row for row in species if row.activity.silent]),
         count([row for row in species if row.activity.hyper_raman]),
     )
-
-
-def _needs_directions(symmetry: CrystalSymmetry) -> bool:
-    return 3 <= symmetry.number <= 15 and not symmetry.setting.choice.startswith("b")

@@ -46,7 +46,7 @@ def out_of_plane_bends(positions: Floats, near: list[list[int]]) -> Floats:
 
 
 def torsions(positions: Floats, bonds: Bonds, near: list[list[int]]) -> Floats:
-    """(m, 3n) displacement vectors of the dihedral angles about every bond."""
+    """(m, 3n) displacement vectors of the dihedral angles about every bond, added up for each bond."""
     return _rows(positions, _torsion_rows(positions, bonds, near))
 
 
@@ -121,26 +121,38 @@ def _out_of_plane_row(positions: Floats, apex: int, ends: list[int], normal: Flo
 
 
 def _torsion_rows(positions: Floats, bonds: Bonds, near: list[list[int]]) -> Iterator[Row]:
+    """One for each bond: the sum of its dihedral angles, in which single ones differ by bends only."""
     for j, k in bonds:
-        for i in near[j]:
-            for m in near[k]:
-                if len({i, j, k, m}) == 4 and not _is_straight(positions, i, j, k, m):
-                    yield _torsion_row(positions, i, j, k, m)
+        before = [i for i in near[j] if i != k and not _is_straight(positions, i, j, k)]
+        after = [m for m in near[k] if m != j and not _is_straight(positions, m, k, j)]
+        if before and after:
+            yield _torsion_row(positions, before, j, k, after)
 
 
-def _is_straight(positions: Floats, i: int, j: int, k: int, m: int) -> bool:
-    axis = _unit(positions, j, k)
-    cosines = abs(axis @ _unit(positions, j, i)), abs(axis @ _unit(positions, k, m))
-    return bool(max(cosines) > _STRAIGHT)
+def _is_straight(positions: Floats, end: int, apex: int, other: int) -> bool:
+    return bool(abs(_unit(positions, apex, end) @ _unit(positions, apex, other)) > _STRAIGHT)
 
 
-def _torsion_row(positions: Floats, i: int, j: int, k: int, m: int) -> Row:
-    """Wilson, Decius and Cross (1955), equations 4-1 (21) to (24)."""
-    first, axis, last = positions[j] - positions[i], positions[k] - positions[j], positions[m] - positions[k]
-    normal_j, normal_k = np.cross(first, axis), np.cross(axis, last)
+def _torsion_row(positions: Floats, before: list[int], j: int, k: int, after: list[int]) -> Row:
+    """Wilson, Decius and Cross (1955), equations 4-1 (21) to (24), added up over the atoms on both ends."""
+    axis = positions[k] - positions[j]
     size = float(np.linalg.norm(axis))
-    on_i = -size * normal_j / (normal_j @ normal_j)
-    on_m = size * normal_k / (normal_k @ normal_k)
-    share_first, share_last = float(first @ axis) / size**2, float(last @ axis) / size**2
-    on_j = -(1 + share_first) * on_i + share_last * on_m
-    return {i: on_i, j: on_j, k: -on_i - on_j - on_m, m: on_m}
+    row = {j: np.zeros(3), k: np.zeros(3)}
+    for i in before:
+        first = positions[j] - positions[i]
+        normal = np.cross(first, axis)
+        pull = -len(after) * size * normal / (normal @ normal)
+        _add(row, i, pull, j, k, float(first @ axis) / size**2)
+    for m in after:
+        last = positions[m] - positions[k]
+        normal = np.cross(axis, last)
+        pull = len(before) * size * normal / (normal @ normal)
+        _add(row, m, pull, k, j, float(last @ axis) / size**2)
+    return row
+
+
+def _add(row: Row, end: int, pull: Floats, apex: int, other: int, share: float) -> None:
+    """A force on an end atom, balanced on the two atoms of the bond."""
+    row[end] = row.get(end, np.zeros(3)) + pull
+    row[apex] = row[apex] - (1 + share) * pull
+    row[other] = row[other] + share * pull

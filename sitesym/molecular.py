@@ -94,12 +94,14 @@ class MolecularAnalysis:
     """All units of a crystal.
 
     molecules  sets of molecules and complex ions; atoms single-atom units; nets chains, layers and nets.
+    unfollowed finite units that could not be followed (see `UnitSet.obstacle`) and are counted with the nets.
     origins    species of the factor group -> origin of its optic modes.
     """
 
     molecules: tuple[MoleculeRow, ...]
     atoms: tuple[UnitCorrelation, ...]
     nets: tuple[Unit, ...]
+    unfollowed: tuple[UnitSet, ...]
     origins: dict[str, Origin]
 
 
@@ -117,13 +119,15 @@ def analyse_molecules(
     """
     sets = units_of_crystal(symmetry, rules, tolerance)
     finite = [correlate(symmetry.factor_group, one) for one in sets if one.site_group is not None]
-    nets = [one for one in sets if one.site_group is None]
-    framework = _framework(symmetry, nets)
+    by_sites = [one for one in sets if one.site_group is None]
+    nets = tuple(one.unit for one in by_sites if not one.obstacle)
+    unfollowed = tuple(one for one in by_sites if one.obstacle)
+    framework = _framework(symmetry, by_sites)
     check_against_sites(symmetry.factor_group, finite, framework, whole)
     molecules = tuple(_row(symmetry, one) for one in finite if one.units.is_molecule)
     atoms = tuple(one for one in finite if not one.units.is_molecule)
     origins = _origins(symmetry, finite, framework)
-    return MolecularAnalysis(molecules, atoms, tuple(one.unit for one in nets), origins)
+    return MolecularAnalysis(molecules, atoms, nets, unfollowed, origins)
 
 
 def _framework(symmetry: CrystalSymmetry, nets: list[UnitSet]) -> Multiplicities:

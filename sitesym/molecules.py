@@ -22,6 +22,12 @@ from sitesym.units import Unit, bonds_of, find_units
 KNOWN_UNIT_TOLERANCE = 0.6
 """Å. How far a unit may be distorted and still be taken for the tabulated ion of its composition (SiO4 of zircon: 0.3)."""
 
+_TOGETHER = 0.6
+"""Å. Two atoms closer than this are never there together; the shortest bond, H-H, is 0.74 Å."""
+
+_TIGHTER = (0.12, 0.06)
+"""Å. Tried where the default makes a tabulated unit more symmetric than it is (a water molecule straight)."""
+
 _BIAXIAL = (Kind(Family.CNV, 2), Kind(Family.DN, 2), Kind(Family.DNH, 2))
 
 LocalBonds = tuple[tuple[int, int], ...]
@@ -56,6 +62,7 @@ class UnitSet:
     centre      (3,) fractional coordinates of the representative's centre in the axes of the report.
     atoms       indices among the primitive atoms of all the units of the set.
     free        the representative as a free molecule; None for single atoms and nets.
+    obstacle    why a finite unit is treated by its atomic sites like a net, or "".
     """
 
     unit: Unit
@@ -65,6 +72,7 @@ class UnitSet:
     centre: Floats
     atoms: Integers
     free: FreeMolecule | None
+    obstacle: str = ""
 
     @property
     def is_molecule(self) -> bool:
@@ -117,8 +125,9 @@ def _unit_set(
     atoms = np.concatenate([units[member].atoms for member in members])
     points = cell.structure.fractional[unit.atoms] + unit.shifts
     centre = points.mean(axis=0) @ cell.basis
-    if unit.dimension > 0:
-        return UnitSet(unit, len(members), None, None, centre, atoms, None)
+    obstacle = _obstacle(points @ cell.structure.lattice)
+    if unit.dimension > 0 or obstacle:
+        return UnitSet(unit, len(members), None, None, centre, atoms, None, obstacle)
     kept = _stabiliser(symmetry, cell, unit, units, owner, index)
     if len(kept) * len(members) != len(symmetry.factor_group):
         raise InconsistencyError(
@@ -132,6 +141,20 @@ def _unit_set(
         free = _free_molecule(cell, bonds, unit, points @ cell.structure.lattice, site_group, tolerance)
         site_group = _in_molecule_axes(site_group, free)
     return UnitSet(unit, len(members), kept, site_group, centre, atoms, free)
+
+
+def _obstacle(points: Floats) -> str:
+    """Atoms of a finite unit that cannot be there together: alternatives of a disordered one."""
+    if len(points) < 2:
+        return ""
+    distance = np.linalg.norm(points[:, None] - points[None], axis=2)
+    np.fill_diagonal(distance, np.inf)
+    if distance.min() >= _TOGETHER:
+        return ""
+    return (
+        f"two of its atoms are only {distance.min():.2f} Å apart, alternatives of a disordered unit, so that the average "
+        "is no molecule that could be followed"
+    )
 
 
 def _stabiliser(
@@ -167,8 +190,11 @@ def _free_molecule(
     expected = known_groups(unit.formula)
     if tolerance is not None or not expected or found.group.schoenflies in expected:
         return found
-    wider = free_molecule(elements, labels, points, local, KNOWN_UNIT_TOLERANCE, required)
-    return wider if wider.group.schoenflies in expected else found
+    for other in (KNOWN_UNIT_TOLERANCE, *_TIGHTER):
+        option = free_molecule(elements, labels, points, local, other, required)
+        if option.group.schoenflies in expected:
+            return option
+    return found
 
 
 def _in_molecule_axes(site_group: PointGroup, free: FreeMolecule) -> PointGroup:
@@ -189,11 +215,20 @@ def free_molecule(
     """
     found = find_operations(elements, points, tolerance=tolerance, required=required)
     positions = found.idealised - found.centre
+    bonds = _closed(bonds, found)
     if found.linear and found.axis is not None:
         group = PointGroup.linear(found.axis, centred=found.linear == "D∞h")
     else:
         group = molecule_group(found.operations, positions, bonds)
     return FreeMolecule(elements, labels, positions, points - found.centre, bonds, found, group)
+
+
+def _closed(bonds: LocalBonds, found: MoleculeSymmetry) -> LocalBonds:
+    """The bonds with all their images: a measured molecule may miss one that its idealised form has."""
+    images = {
+        (min(i, j), max(i, j)) for row in found.permutations.tolist() for i, j in ((row[a], row[b]) for a, b in bonds)
+    }
+    return tuple(sorted(images))
 
 
 def _local_bonds(bonds: Bonds, unit: Unit) -> LocalBonds:

@@ -128,7 +128,7 @@ class Structure:
         sign = np.sign(np.linalg.det(self.lattice))
         return self.lattice * sign, self.fractional * sign
 
-    @property
+    @cached_property
     def elements(self) -> tuple[str, ...]:
         """Element name of every site; mixed sites read like `Ca/Mg`."""
         return tuple(site.element for site in self.sites)

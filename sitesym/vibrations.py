@@ -21,7 +21,8 @@ from sitesym.internal_coordinates import bends, neighbours, out_of_plane_bends, 
 KINDS = ("stretching", "bending", "out-of-plane", "torsion", "skeletal")
 """In the order in which they are counted; `skeletal` is what the graph of bonds does not reach."""
 
-_INDEPENDENT = 1e-5
+_NEARLY_REDUNDANT = (1e-3, 0.1)
+"""Singular values below count as zero, those above as independent, relative to the largest coordinate vector."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,7 +99,8 @@ def _by_kind(
         lambda: torsions(positions, bonds, near),
     )
     kinds: dict[str, Multiplicities] = {}
-    rest, basis, wanted = internal, np.zeros((0, positions.size)), _size(group, internal)
+    basis = _rigid_motions(positions)
+    rest, wanted = internal, len(basis) + _size(group, internal)
     for kind, make in zip(KINDS, makers, strict=False):
         if len(basis) == wanted:
             break
@@ -112,18 +114,42 @@ def _by_kind(
     return kinds
 
 
+def _rigid_motions(positions: Floats) -> Floats:
+    """Orthonormal displacement vectors (3, 5 or 6; 3n) of the translations and rotations about the origin."""
+    axes = np.eye(3)
+    shifts = np.tile(axes, (1, len(positions)))
+    turns = np.array([np.cross(axis, positions).ravel() for axis in axes])
+    return _new_directions(np.zeros((0, positions.size)), np.vstack([shifts, turns]))
+
+
 def _size(group: PointGroup, parts: Multiplicities) -> int:
     sizes = {one.label: one.dimension for one in group.species}
     return sum(sizes[label] * count for label, count in parts.items())
 
 
 def _new_directions(basis: Floats, rows: Floats) -> Floats:
-    """Orthonormal basis of what `rows` span beyond an orthonormal `basis`."""
+    """Orthonormal basis of what `rows` span beyond an orthonormal `basis`.
+
+    Coordinates that are redundant but for a small distortion (angles round a nearly planar atom) span next to nothing
+    new; the cut is made at the widest gap of the singular values, so that it never parts a symmetric set of them.
+    """
     if not len(rows):
         return rows
     rest = rows - (rows @ basis.T) @ basis
     squares, vectors = np.linalg.eigh(rest.T @ rest)
-    return np.asarray(vectors.T[squares > (_INDEPENDENT * np.linalg.norm(rows, axis=1).max()) ** 2])
+    sizes = np.sqrt(np.clip(squares, 0, None)) / np.linalg.norm(rows, axis=1).max()
+    fresh = vectors[:, sizes > _cut(sizes)]
+    fresh = fresh - basis.T @ (basis @ fresh)
+    return np.asarray(np.linalg.qr(fresh)[0].T)
+
+
+def _cut(sizes: Floats) -> float:
+    """A value in the middle of the widest gap, on a scale of ratios, between the singular values near zero."""
+    low, high = _NEARLY_REDUNDANT
+    inside = np.sort(sizes[(sizes > low) & (sizes < high)])
+    marks = np.log(np.concatenate([[low], inside, [high]]))
+    widest = int(np.argmax(np.diff(marks)))
+    return float(np.exp((marks[widest] + marks[widest + 1]) / 2))
 
 
 def _subspace_characters(group: PointGroup, permutations: Integers, basis: Floats) -> Floats:

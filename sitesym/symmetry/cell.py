@@ -122,16 +122,26 @@ def match_setting(rotations: Integers, translations: Floats, number: int) -> Set
 
     Rotation parts and centring must be the same, and every screw and glide part (International Tables A, 1.2.2).
     """
-    for candidate in settings_of(number):
-        other_rotations, other_translations = setting_operations(candidate.hall_number)
-        if len(other_rotations) == len(rotations) and _same_axes(
-            rotations, translations, other_rotations, other_translations
-        ):
-            return candidate
-    return None
+    matched = [one for one in settings_of(number) if _same_axes(rotations, translations, *_operations(one))]
+    exact = (one for one in matched if _same_origin(rotations, translations, *_operations(one)))
+    return next(exact, matched[0] if matched else None)
+
+
+def _operations(one: Setting) -> tuple[Integers, Floats]:
+    return setting_operations(one.hall_number)
+
+
+def _same_origin(rotations: Integers, translations: Floats, others: Integers, other_translations: Floats) -> bool:
+    """Whether every operation is there as tabulated, its translation included (lattice translations aside)."""
+    same = (_codes(rotations)[:, None] == _codes(others)[None]) & _near_integers(
+        translations[:, None] - other_translations[None]
+    )
+    return bool(same.any(axis=1).all())
 
 
 def _same_axes(rotations: Integers, translations: Floats, others: Integers, other_translations: Floats) -> bool:
+    if len(rotations) != len(others):
+        return False
     codes, first = np.unique(_codes(rotations), return_index=True)
     other_codes, second = np.unique(_codes(others), return_index=True)
     if not np.array_equal(codes, other_codes):

@@ -64,6 +64,19 @@ class Setting:
     hall: str
     choice: str
 
+    @property
+    def symbol(self) -> str:
+        """The usual symbol without blanks; that of a monoclinic setting with unique axis a or c keeps its directions.
+
+        `R-3c`, `Pbnm`, `P2_1/n` for cell choice 2 of number 14, `P 1 1 2_1/b`.
+        """
+        if 3 <= self.number <= 15:
+            if not self.choice.startswith("b"):
+                return self.full
+            letter, _, second, _ = self.full.split()
+            return letter + second
+        return self.short.replace(" ", "")
+
 
 def search(lattice: Floats, positions: Floats, kinds: Integers, tolerance: float) -> Search:
     """Space group of a cell (rows of `lattice` in Å, fractional positions) at a tolerance in Å.

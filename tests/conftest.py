@@ -1,0 +1,6 @@
+"""One thread for linear algebra: the matrices are small, and the workers of a parallel run would only disturb each other."""
+
+import os
+
+for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
+    os.environ.setdefault(name, "1")
