@@ -18,6 +18,7 @@ from sitesym.symmetry.crystal import DEFAULT_TOLERANCE, CrystalSymmetry, Orbit, 
 from sitesym.symmetry.scan import Scan, scan_tolerance
 from sitesym.symmetry.site_symbol import oriented_symbol
 from sitesym.tensors import TensorSpecies, tensor_species
+from sitesym.wavenumbers import Wavenumbers
 
 
 @dataclass(frozen=True, eq=False)
@@ -162,6 +163,7 @@ def analyse(
     molecules: bool = True,
     bonds: BondRules | None = None,
     molecule_tolerance: float | None = None,
+    wavenumbers: Wavenumbers | None = None,
 ) -> Analysis:
     """Analyse the zone-centre vibrations of a crystal.
 
@@ -171,7 +173,8 @@ def analyse(
     setting    Hermann-Mauguin symbol of a setting of the space group, to label and orient everything in it.
     scan       also search at other tolerances, to tell how far the space group can be trusted.
     molecules  also find molecules and complex ions and follow their vibrations; `bonds` is the user's word on what is
-               bonded, `molecule_tolerance` (Å) serves the free molecules' own point groups (see `molecules`).
+               bonded, `molecule_tolerance` (Å) serves the free molecules' own point groups (see `molecules`),
+               `wavenumbers` are those that the user gives for their vibrations.
 
     Raises UsageError for arguments that make no sense, InconsistencyError when two routes to a number disagree.
     """
@@ -180,7 +183,7 @@ def analyse(
     whole = checked_sum(symmetry, (row.contribution for row in sites))
     species = _species_rows(symmetry, whole)
     scanned = scan_tolerance(symmetry) if scan else None
-    molecular = analyse_molecules(symmetry, whole, bonds, molecule_tolerance) if molecules else None
+    molecular = analyse_molecules(symmetry, whole, bonds, molecule_tolerance, wavenumbers) if molecules else None
     return Analysis(
         structure, symmetry, sites, species, _totals(symmetry, species), describe_axes(symmetry),
         scanned, molecular, cautions_of(structure, symmetry, scanned),

@@ -1,24 +1,26 @@
-"""The molecular side of an analysis: every unit followed into the crystal, named, oriented, and checked against the atoms."""
+"""The molecular side of an analysis: every unit followed into the crystal, named, oriented, and checked by the atoms."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from sitesym.bonding import BondRules
 from sitesym.correlation import UnitCorrelation, check_against_sites, correlate
 from sitesym.decomposition import site_contribution
+from sitesym.expected_bands import ExpectedBand, expected_bands
+from sitesym.fate import Fate, fate_of, fates_of_motions
 from sitesym.groups.operation import Floats
 from sitesym.groups.subduction import Multiplicities, added, in_order, subtracted
-from sitesym.known_units import KnownVibration
+from sitesym.known_units import KnownUnit, composition_of
 from sitesym.molecules import FreeMolecule, UnitSet, units_of_crystal
 from sitesym.selection import vector_species
 from sitesym.symmetry.crystal import CrystalSymmetry
 from sitesym.symmetry.site_symbol import oriented_symbol
 from sitesym.symmetry.wyckoff import wyckoff_letter
-from sitesym.units import Unit
-from sitesym.vibration_names import known_vibrations
+from sitesym.vibration_names import Names, known_vibrations
+from sitesym.wavenumbers import Target, Wavenumbers, assigned
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,8 +44,13 @@ class MoleculeRow:
 
     wyckoff, multiplicity  position of their centres in the conventional cell.
     symbol                 oriented Hermann-Mauguin symbol of the site group.
-    names                  for each entry of `correlation.vibrations` the usual names and free wavenumbers, if known.
-    source                 where those come from, or "".
+    fates                  what becomes of each entry of `correlation.vibrations`.
+    librations             what becomes of the librations, one entry for each species of the free molecule.
+    translations           what becomes of the translations, likewise.
+    names                  for each entry of `correlation.vibrations` the usual names and wavenumbers, if known.
+    known                  the unit of the table from which they come, or None.
+    source                 where tabulated wavenumbers come from, or "".
+    remark                 what else to know about names and wavenumbers, or "".
     orientation            the molecule's axes in the crystal.
     """
 
@@ -51,8 +58,13 @@ class MoleculeRow:
     wyckoff: str
     multiplicity: int
     symbol: str
-    names: tuple[tuple[KnownVibration, ...], ...]
+    fates: tuple[Fate, ...]
+    librations: tuple[Fate, ...]
+    translations: tuple[Fate, ...]
+    names: Names
+    known: KnownUnit | None
     source: str
+    remark: str
     orientation: tuple[AxisRelation, ...]
 
     @property
@@ -70,6 +82,11 @@ class MoleculeRow:
     def formula(self) -> str:
         """Formula in Hill order."""
         return self.units.unit.formula
+
+    @property
+    def name(self) -> str:
+        """Formula as chemists write it."""
+        return self.units.unit.name
 
     def __repr__(self) -> str:
         groups = f"{self.free.group.schoenflies} on {self.symbol}"
@@ -96,13 +113,25 @@ class MolecularAnalysis:
     molecules  sets of molecules and complex ions; atoms single-atom units; nets chains, layers and nets.
     unfollowed finite units that could not be followed (see `UnitSet.obstacle`) and are counted with the nets.
     origins    species of the factor group -> origin of its optic modes.
+    bands      where internal vibrations of known wavenumber are expected.
+    tolerance  Å, that the user gave for the free molecules' groups; None for the default.
     """
 
     molecules: tuple[MoleculeRow, ...]
     atoms: tuple[UnitCorrelation, ...]
-    nets: tuple[Unit, ...]
+    nets: tuple[UnitSet, ...]
     unfollowed: tuple[UnitSet, ...]
     origins: dict[str, Origin]
+    bands: tuple[ExpectedBand, ...]
+    tolerance: float | None
+
+    @property
+    def inequivalent(self) -> tuple[tuple[MoleculeRow, ...], ...]:
+        """Molecules of one composition that symmetry does not carry into each other: two or more sets together."""
+        kinds: dict[frozenset[tuple[str, int]], list[MoleculeRow]] = {}
+        for row in self.molecules:
+            kinds.setdefault(composition_of(row.formula), []).append(row)
+        return tuple(tuple(rows) for rows in kinds.values() if len(rows) > 1)
 
 
 def analyse_molecules(
@@ -110,24 +139,44 @@ def analyse_molecules(
     whole: Multiplicities,
     rules: BondRules | None = None,
     tolerance: float | None = None,
+    wavenumbers: Wavenumbers | None = None,
 ) -> MolecularAnalysis:
     """Find the units of a crystal and correlate their motions.
 
-    whole  species of all 3N displacements by the atomic sites: the sum over all units must equal it.
+    whole        species of all 3N displacements by the atomic sites: the sum over all units must equal it.
+    wavenumbers  the user's own, in the place of the tabulated ones.
 
-    Raises UsageError for rules that name what is not there, InconsistencyError when the sums differ.
+    Raises UsageError for rules or wavenumbers that name what is not there, InconsistencyError when the sums differ.
     """
     sets = units_of_crystal(symmetry, rules, tolerance)
     finite = [correlate(symmetry.factor_group, one) for one in sets if one.site_group is not None]
     by_sites = [one for one in sets if one.site_group is None]
-    nets = tuple(one.unit for one in by_sites if not one.obstacle)
+    nets = tuple(one for one in by_sites if not one.obstacle)
     unfollowed = tuple(one for one in by_sites if one.obstacle)
     framework = _framework(symmetry, by_sites)
     check_against_sites(symmetry.factor_group, finite, framework, whole)
-    molecules = tuple(_row(symmetry, one) for one in finite if one.units.is_molecule)
+    alone = len({one.unit.formula for one in sets}) == 1
+    molecules = tuple(_row(symmetry, one, alone) for one in finite if one.units.is_molecule)
+    if wavenumbers is not None:
+        molecules = _with_wavenumbers(molecules, wavenumbers)
     atoms = tuple(one for one in finite if not one.units.is_molecule)
     origins = _origins(symmetry, finite, framework)
-    return MolecularAnalysis(molecules, atoms, nets, unfollowed, origins)
+    return MolecularAnalysis(molecules, atoms, nets, unfollowed, origins, _bands(molecules), tolerance)
+
+
+def _with_wavenumbers(molecules: tuple[MoleculeRow, ...], wavenumbers: Wavenumbers) -> tuple[MoleculeRow, ...]:
+    targets = [Target(row.name, row.units.unit.labels, row.correlation.vibrations, row.names) for row in molecules]
+    found = assigned(wavenumbers, targets)
+    return tuple(replace(row, names=names) for row, names in zip(molecules, found, strict=True))
+
+
+def _bands(molecules: tuple[MoleculeRow, ...]) -> tuple[ExpectedBand, ...]:
+    found = [
+        band
+        for number, row in enumerate(molecules)
+        for band in expected_bands(row.name, number, row.correlation.vibrations, row.names, row.fates)
+    ]
+    return tuple(sorted(found, key=lambda band: band.wavenumber))
 
 
 def _framework(symmetry: CrystalSymmetry, nets: list[UnitSet]) -> Multiplicities:
@@ -137,9 +186,7 @@ def _framework(symmetry: CrystalSymmetry, nets: list[UnitSet]) -> Multiplicities
     return in_order(symmetry.factor_group, added(*(site_contribution(symmetry, orbit) for orbit in orbits)))
 
 
-def _origins(
-    symmetry: CrystalSymmetry, finite: list[UnitCorrelation], framework: Multiplicities
-) -> dict[str, Origin]:
+def _origins(symmetry: CrystalSymmetry, finite: list[UnitCorrelation], framework: Multiplicities) -> dict[str, Origin]:
     """The acoustic branches are taken from the translations, or from the framework where there are not enough."""
     translations = added(*(one.translations.crystal for one in finite))
     librations = added(*(one.librations.crystal for one in finite))
@@ -160,19 +207,25 @@ def _origins(
     }
 
 
-def _row(symmetry: CrystalSymmetry, correlation: UnitCorrelation) -> MoleculeRow:
+def _row(symmetry: CrystalSymmetry, correlation: UnitCorrelation, alone: bool) -> MoleculeRow:
     units = correlation.units
     free, site_group = units.free, units.site_group
     assert free is not None
     assert site_group is not None
-    names, source = known_vibrations(units.unit.formula, free.group.schoenflies, correlation.vibrations)
+    groups = free.group, site_group, symmetry.factor_group
+    naming = known_vibrations(units.unit.formula, free.group.schoenflies, correlation.vibrations, alone=alone)
     return MoleculeRow(
         correlation,
         _letter(symmetry, units),
         units.count * len(symmetry.cell.centring_vectors),
         oriented_symbol(site_group, symmetry.lattice, symmetry.number),
-        names,
-        source,
+        tuple(fate_of(one, site_group, symmetry.factor_group) for one in correlation.vibrations),
+        fates_of_motions(correlation.librations, *groups),
+        fates_of_motions(correlation.translations, *groups),
+        naming.names,
+        naming.unit,
+        naming.source,
+        naming.remark,
         _orientation(symmetry, free),
     )
 

@@ -51,6 +51,20 @@ class FreeMolecule:
     symmetry: MoleculeSymmetry
     group: PointGroup
 
+    @property
+    def higher_group(self) -> str:
+        """Schoenflies symbol of the next higher group within reach (see `symmetry.next_higher`), "" if none is."""
+        higher = self.symmetry.next_higher
+        if higher is None:
+            return ""
+        return higher.linear or PointGroup.of(higher.operations).schoenflies
+
+    @property
+    def is_planar(self) -> bool:
+        """Whether all atoms lie in one plane but not on one line."""
+        spread = np.linalg.svd(self.positions, compute_uv=False)
+        return bool(len(self.elements) > 2 and spread[2] < 1e-3 < spread[1])
+
 
 @dataclass(frozen=True, eq=False)
 class UnitSet:
