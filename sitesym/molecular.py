@@ -1,11 +1,13 @@
-"""The molecular side of an analysis: every unit followed into the crystal, named, oriented, and checked by the atoms."""
+"""The molecular side of an analysis: every unit followed into the crystal, named, oriented, checked by the atoms."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from itertools import product
 
 import numpy as np
 
+from sitesym.bond_stretches import BondStretches, bond_stretches
 from sitesym.bonding import BondRules
 from sitesym.correlation import UnitCorrelation, check_against_sites, correlate
 from sitesym.decomposition import site_contribution
@@ -29,7 +31,8 @@ class AxisRelation:
 
     name       of the molecular axis: "z" (the main axis), "x" or "y".
     direction  (3,) unit vector in the Cartesian axes of the report.
-    nearest    the crystal axis (a, b, c, a*, b*, c*) closest to it, and the angle between the two lines in degrees.
+    nearest    the crystal axis (a, b, c, a*, b*, c*) closest to it, or a lattice direction like [110] that it follows
+               exactly, and the angle between the two lines in degrees.
     """
 
     name: str
@@ -51,6 +54,7 @@ class MoleculeRow:
     known                  the unit of the table from which they come, or None.
     source                 where tabulated wavenumbers come from, or "".
     remark                 what else to know about names and wavenumbers, or "".
+    stretches              the stretches of the free molecule by kinds of bonds.
     orientation            the molecule's axes in the crystal.
     """
 
@@ -65,6 +69,7 @@ class MoleculeRow:
     known: KnownUnit | None
     source: str
     remark: str
+    stretches: tuple[BondStretches, ...]
     orientation: tuple[AxisRelation, ...]
 
     @property
@@ -87,6 +92,11 @@ class MoleculeRow:
     def name(self) -> str:
         """Formula as chemists write it."""
         return self.units.unit.name
+
+    @property
+    def bond_pairs(self) -> tuple[str, ...]:
+        """The kinds of its bonds, as `O-H`."""
+        return tuple(one.pair for one in self.stretches)
 
     def __repr__(self) -> str:
         groups = f"{self.free.group.schoenflies} on {self.symbol}"
@@ -226,6 +236,7 @@ def _row(symmetry: CrystalSymmetry, correlation: UnitCorrelation, alone: bool) -
         naming.unit,
         naming.source,
         naming.remark,
+        bond_stretches(free.group, free.positions, free.bonds, free.elements),
         _orientation(symmetry, free),
     )
 
@@ -245,17 +256,30 @@ def _letter(symmetry: CrystalSymmetry, units: UnitSet) -> str:
 
 
 def _orientation(symmetry: CrystalSymmetry, free: FreeMolecule) -> tuple[AxisRelation, ...]:
-    """z first, then x and y; for linear molecules the axis only."""
+    """The axis z first, then x and y; for linear molecules the axis only."""
     order = (2,) if free.symmetry.is_linear else (2, 0, 1)
     return tuple(_relation(symmetry.lattice, "xyz"[k], free.group.frame[k]) for k in order)
 
 
 def _relation(lattice: Floats, name: str, direction: Floats) -> AxisRelation:
     reciprocal = np.linalg.inv(lattice).T
-    lines = np.vstack([lattice, reciprocal])
-    lines = lines / np.linalg.norm(lines, axis=1)[:, None]
-    closeness = np.round(np.abs(lines @ direction), 9)
-    best = int(np.argmax(closeness))
-    nearest = ("a", "b", "c", "a*", "b*", "c*")[best]
+    basic = _angles(np.vstack([lattice, reciprocal]), direction)
+    nearest, angle = ("a", "b", "c", "a*", "b*", "c*")[int(np.argmin(basic))], float(basic.min())
+    diagonal = _angles(_DIAGONALS @ lattice, direction)
+    if angle > _ALONG and diagonal.min() < _ALONG:
+        indices = _DIAGONALS[int(np.argmin(diagonal))]
+        nearest, angle = f"[{''.join(map(str, indices.tolist()))}]", float(diagonal.min())
     x, y, z = (float(value) for value in direction)
-    return AxisRelation(name, (x, y, z), nearest, float(np.degrees(np.arccos(min(closeness[best], 1.0)))))
+    return AxisRelation(name, (x, y, z), nearest, angle)
+
+
+_ALONG = 0.05
+"""Degrees. Two lines nearer than this are parallel."""
+
+_DIAGONALS = np.array([one for one in product((0, 1, -1), repeat=3) if np.count_nonzero(one) > 1 and one > (0, 0, 0)])
+
+
+def _angles(lines: Floats, direction: Floats) -> Floats:
+    """(m,) angles in degrees between lines (m, 3) and a unit vector, to a millionth of a degree."""
+    across = np.linalg.norm(np.cross(lines, direction), axis=1)
+    return np.asarray(np.round(np.degrees(np.arctan2(across, np.abs(lines @ direction))), 6))

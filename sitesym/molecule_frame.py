@@ -2,7 +2,7 @@
 
 z is the main axis. Planar C2v: x is normal to the plane; planar D2h: x normal to the plane and z through the most atoms
 (else across the most bonds), as Mulliken recommends (J. Chem. Phys. 23, 1997, 1955). By the same counsel the plane of
-most atoms is yz in other C2v molecules, and the twofold axis through most atoms is z in other D2 and D2h ones. Where two
+most atoms is yz in other C2v molecules, and the twofold axis through most atoms is z in other D2, D2h ones. Where two
 sets of twofold axes or mirrors compete (D4h, D6h, C4v, …), C2′ and σv are those through the most atoms.
 """
 

@@ -9,8 +9,8 @@ import numpy as np
 
 from sitesym.bonding import BondRules, Bonds
 from sitesym.errors import InconsistencyError
-from sitesym.groups.operation import Floats, Integers
 from sitesym.groups.kind import Family, Kind
+from sitesym.groups.operation import Floats, Integers
 from sitesym.groups.point_group import PointGroup
 from sitesym.known_units import known_groups
 from sitesym.molecule_frame import molecule_group
@@ -20,7 +20,7 @@ from sitesym.symmetry.primitive import PrimitiveCell, moved, primitive_cell
 from sitesym.units import Unit, bonds_of, find_units
 
 KNOWN_UNIT_TOLERANCE = 0.6
-"""Å. How far a unit may be distorted and still be taken for the tabulated ion of its composition (SiO4 of zircon: 0.3)."""
+"""Å. How far a unit may be distorted and still pass for the tabulated ion of its composition (SiO4 of zircon: 0.3)."""
 
 _TOGETHER = 0.6
 """Å. Two atoms closer than this are never there together; the shortest bond, H-H, is 0.74 Å."""
@@ -145,8 +145,8 @@ def _unit_set(
     kept = _stabiliser(symmetry, cell, unit, units, owner, index)
     if len(kept) * len(members) != len(symmetry.factor_group):
         raise InconsistencyError(
-            f"{len(members)} equivalent units {unit.formula} and a site group of order {len(kept)} do not make a factor "
-            f"group of order {len(symmetry.factor_group)}.",
+            f"{len(members)} equivalent units {unit.formula} and a site group of order {len(kept)} do not make a "
+            f"factor group of order {len(symmetry.factor_group)}.",
             "Name the units yourself with --unit, --bond or --no-bond, or try another --tolerance.",
         )
     site_group = symmetry.factor_group.subgroup(kept)
@@ -166,8 +166,8 @@ def _obstacle(points: Floats) -> str:
     if distance.min() >= _TOGETHER:
         return ""
     return (
-        f"two of its atoms are only {distance.min():.2f} Å apart, alternatives of a disordered unit, so that the average "
-        "is no molecule that could be followed"
+        f"two of its atoms are only {distance.min():.2f} Å apart, alternatives of a disordered unit, so that the "
+        "average is no molecule that could be followed"
     )
 
 

@@ -7,7 +7,7 @@ keeps; what a kind adds to those named before it is counted as its own, so redun
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -62,7 +62,7 @@ def rotation_characters(group: PointGroup, positions: Floats) -> Floats:
     """Characters of the rotations that a molecule of this shape can make: three, two if linear, none if an atom."""
     matrices = group.matrices
     signs = determinants(matrices)
-    axial = np.trace(matrices, axis1=1, axis2=2) * signs
+    axial = np.asarray(np.trace(matrices, axis1=1, axis2=2) * signs)
     spread = np.linalg.svd(positions - positions.mean(axis=0), full_matrices=False)
     if spread[1][0] < 1e-6:
         return np.zeros(len(matrices))
@@ -92,7 +92,7 @@ def _by_kind(
     internal: Multiplicities,
 ) -> dict[str, Multiplicities]:  # fmt: skip
     near = neighbours(len(positions), bonds)
-    makers = (
+    makers: tuple[Callable[[], Floats], ...] = (
         lambda: stretches(positions, bonds),
         lambda: bends(positions, near),
         lambda: out_of_plane_bends(positions, near),

@@ -1,4 +1,4 @@
-"""One thread for linear algebra: the matrices are small, and the workers of a parallel run would only disturb each other."""
+"""One thread for linear algebra: the matrices are small, and parallel workers would only disturb each other."""
 
 import os
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from functools import lru_cache
+from functools import cache
 from typing import Any
 
 import numpy as np
@@ -21,7 +21,7 @@ from sitesym.selection import activity_of
 CASES = reference("correlations.toml")["case"]
 
 
-@lru_cache(maxsize=None)
+@cache
 def analysed(index: int) -> Analysis:
     case = CASES[index]
     sites = [{"label": site["label"], "element": site["element"], "xyz": site["position"]} for site in case["sites"]]

@@ -4,16 +4,17 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from literature import of_entry, reference
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
+from literature import of_entry, reference
 
 from sitesym.analysis import Analysis, analyse
 from sitesym.structure import Structure
 
 ENTRIES = {entry["name"]: entry for entry in reference("decompositions.toml")["compound"]}
 NAMES = (
-    "calcite", "rutile", "alpha-quartz", "forsterite", "wurtzite (zinc oxide)", "zincblende", "baddeleyite", "scheelite",
+    "calcite", "rutile", "alpha-quartz", "forsterite", "wurtzite (zinc oxide)", "zincblende", "baddeleyite",
+    "scheelite",
 )  # fmt: skip
 CASES = {name: of_entry(ENTRIES[name]) for name in NAMES}
 RELAXED = settings(max_examples=40, deadline=None, suppress_health_check=[HealthCheck.too_slow])

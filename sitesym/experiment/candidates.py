@@ -112,12 +112,13 @@ def _along_one_line(normal: Direction, mount: str, lattice: Floats, analyser: bo
     u, v = axes_of_face(normal, lattice)
     plus, minus = turned(u, beam, 45), turned(u, beam, -45)
     base = 3 if mount == "forward" else 0
-    pairs = [(u, u, 0), (v, v, 0), (u, v, 0), (plus, plus, 2), (plus, minus, 2)]
-    if not analyser:
-        pairs = [(u, None, 0), (v, None, 0), (plus, None, 2)]
+    natural = unpolarized(scattered)
+    pairs = [(u, natural, 0), (v, natural, 0), (plus, natural, 2)]
+    if analyser:
+        lines = [(u, u, 0), (v, v, 0), (u, v, 0), (plus, plus, 2), (plus, minus, 2)]
+        pairs = [(incoming, linear(outgoing), ease) for incoming, outgoing, ease in lines]
     for incoming, outgoing, ease in pairs:
-        analysed = unpolarized(scattered) if outgoing is None else linear(outgoing)
-        geometry = Geometry(beam, linear(incoming), analysed, scattered)
+        geometry = Geometry(beam, linear(incoming), outgoing, scattered)
         yield Candidate(geometry, (normal.name,), mount, base + ease)
 
 

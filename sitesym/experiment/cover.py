@@ -69,7 +69,7 @@ def least_cover(candidates: Sequence[Candidate], results: Sequence[GeometryResul
     """
     demands = demands_of(results)
     table = np.array([[meets(result, demand) for result in results] for demand in demands]).reshape(len(demands), -1)
-    possible = table.any(axis=1) if table.size else np.zeros(len(demands), dtype=bool)
+    possible = [bool(row.any()) for row in table]
     met = tuple(demand for demand, can in zip(demands, possible, strict=True) if can)
     unmet = tuple(demand for demand, can in zip(demands, possible, strict=True) if not can)
     if not met:

@@ -116,7 +116,7 @@ def _over_cone(density: Complexes, beam: Direction, half: float) -> Complexes:
     for cosine, spoke in product(cosines, range(_SPOKES)):
         turn = _rotation(_across(beam.vector, 2 * np.pi * spoke / _SPOKES), float(np.arccos(cosine)))
         total += turn @ density @ turn.T
-    return total / (_RINGS * _SPOKES)
+    return np.asarray(total / (_RINGS * _SPOKES))
 
 
 def _across(beam: Floats, azimuth: float) -> Floats:

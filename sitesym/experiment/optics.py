@@ -116,6 +116,6 @@ def optical_activity(analysis: Analysis, geometry: Geometry) -> str:
     if not beams:
         return ""
     return (
-        f"the crystal may be optically active: along {' and '.join(dict.fromkeys(beams))} the plane of polarization can "
-        "turn (quartz: about 22° per mm at 589 nm along c), so keep the path short"
+        f"the crystal may be optically active: along {' and '.join(dict.fromkeys(beams))} the plane of polarization "
+        "can turn (quartz: about 22° per mm at 589 nm along c), so keep the path short"
     )

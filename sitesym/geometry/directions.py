@@ -80,7 +80,7 @@ def face_normal(text: str, lattice: Floats) -> Direction:
 
 def _check_bravais(numbers: list[int], text: str) -> None:
     if numbers[0] + numbers[1] + numbers[2] != 0:
-        raise UsageError(f"In '{text}' the first three of four indices do not add up to zero.", "Correct the third one.")
+        raise UsageError(f"In '{text}' the first three of four indices do not add up to 0.", "Correct the third one.")
 
 
 def parse_direction(text: str, lattice: Floats) -> Direction:

@@ -21,7 +21,7 @@ def amplitudes(geometry: Geometry, basis: Floats) -> Complexes:
     """
     incoming, outgoing = geometry.incoming.vectors, geometry.outgoing.vectors
     contracted = np.einsum("sa,kab,ib->sik", outgoing.conj(), basis, incoming)
-    return contracted.reshape(-1, len(basis))
+    return np.asarray(contracted.reshape(-1, len(basis)))
 
 
 def quadratic_form(geometry: Geometry, bases: list[Floats]) -> Complexes:

@@ -69,8 +69,8 @@ def index_of(matrices: Floats, group: Floats) -> Integers:
     found = _by_projection(flat, known)
     missing = np.flatnonzero(found < 0)
     if len(missing):
-        same = (np.abs(flat[missing, None] - known[None]) < SAME).all(axis=2)
-        found[missing] = np.where(same.any(axis=1), same.argmax(axis=1), -1)
+        distance = np.abs(flat[missing, None] - known[None]).max(axis=2)
+        found[missing] = np.where((distance < SAME).any(axis=1), (distance < SAME).argmax(axis=1), -1)
     return found
 
 
