@@ -4,7 +4,8 @@
     .venv/bin/python scripts/benchmark.py --rounds 15  steadier on a busy machine
 
 Whole processes are compared with `import numpy` or `import numpy, spglib`; the analysis in process with
-`spglib.get_symmetry_dataset` of the same cell; memory with importing numpy and spglib and reading the same file.
+`spglib.get_symmetry_dataset` of the same cell (the analysis by sites has limits, what the tolerance scan and the
+molecules add to it is shown beside it); memory with importing numpy and spglib and reading the same file.
 Every time is the best of several rounds, the rivals taking turns within a round. The exit code is 1 if a
 limit is passed.
 
@@ -14,6 +15,7 @@ of its parent, and a warm import would flatter the next case.
 
 import argparse
 import json
+import math
 import random
 import subprocess
 import sys
@@ -27,6 +29,10 @@ STRUCTURES = REPOSITORY / "structures_demo"
 CALCITE = str(STRUCTURES / "calcite.cif")
 PYROPE = str(STRUCTURES / "pyrope.cif")
 ATOMS = 2000
+LARGE_CELL = ["60.0 0.0 0.0", "2.9 30.3 0.0", "-3.7 1.3 30.7"]
+MOLECULAR_CELL = ["48.0 0.0 0.0", "0.0 24.3 0.0", "0.0 0.0 25.1"]
+
+Point = tuple[float, float, float]
 
 
 @dataclass(frozen=True)
@@ -117,10 +123,12 @@ cell = (structure.lattice, structure.fractional, structure.kinds)
 TIME_ANALYSIS = (
     PREPARE
     + """
+options = {"tolerance": 0.01, "scan": False, "molecules": False}
 tasks = {
     "dataset": lambda: spglib.get_symmetry_dataset(cell, symprec=0.01),
-    "analysis": lambda: sitesym.analyse(structure, tolerance=0.01, scan=False),
-    "with scan": lambda: sitesym.analyse(structure, tolerance=0.01, scan=True),
+    "analysis": lambda: sitesym.analyse(structure, **options),
+    "with scan": lambda: sitesym.analyse(structure, **options | {"scan": True}),
+    "with molecules": lambda: sitesym.analyse(structure, **options | {"molecules": True}),
 }
 best = dict.fromkeys(tasks, float("inf"))
 assert len(structure) == int(sys.argv[3]), f"{path} has {len(structure)} atoms, not {sys.argv[3]}"
@@ -137,7 +145,7 @@ for scan in (False, True):
         calls[scan] = calls.get(scan, 0) + 1
         return original(*arguments, **options)
     spglib.get_symmetry_dataset = counting
-    sitesym.analyse(structure, tolerance=0.01, scan=scan)
+    sitesym.analyse(structure, **options | {"scan": scan})
 assert False in calls, "no dataset call was seen: the analysis calls spglib in another way than this script expects"
 print(json.dumps(best | {"calls of the scan": calls[True] - calls[False]}))
 """
@@ -155,6 +163,7 @@ def child(program: str, *arguments: str) -> dict[str, float]:
 
 
 def analysis_rows(rounds: int, large: str) -> list[Row]:
+    """Zone-centre analysis by atomic sites; what the tolerance scan and the molecules add to it is shown beside it."""
     cases = [
         (CALCITE, 30, "30 atoms, calcite", 10.0, 4 * rounds),
         (PYROPE, 160, "160 atoms in Ia-3d, pyrope", 3.0, rounds),
@@ -164,11 +173,56 @@ def analysis_rows(rounds: int, large: str) -> list[Row]:
     for path, atoms, title, limit, turns in cases:
         best = child(TIME_ANALYSIS, path, str(turns), str(atoms))
         dataset = 1e3 * best["dataset"]
-        scan = 1e3 * max(best["with scan"] - best["analysis"], 0.0)
         rows.append(Row(f"analysis, {title}", 1e3 * best["analysis"], "one dataset", dataset, "ms", limit))
-        rows.append(Row(f"tolerance scan, {title}", scan, "one dataset", dataset, "ms", None))
-        rows.append(Row(f"dataset calls of the scan, {title}", best["calls of the scan"], "one call", 1.0, "  ", 8.0))
+        rows += [
+            Row(
+                f"... {what}, in addition",
+                1e3 * max(best[what] - best["analysis"], 0.0),
+                "one dataset",
+                dataset,
+                "ms",
+                None,
+            )
+            for what in ("with scan", "with molecules")
+        ]
+        rows.append(Row("... dataset calls of the scan", best["calls of the scan"], "one call", 1.0, "  ", 8.0))
     return rows
+
+
+# Molecules ------------------------------------------------------------------------------------------------------------
+
+TIME_FULLERENE = """
+import json, sys, time
+from itertools import permutations, product
+import numpy as np
+from sitesym.molecule_symmetry import find_operations
+golden = (1 + 5**0.5) / 2
+kinds = [(0, 1, 3 * golden), (1, 2 + golden, 2 * golden), (golden, 2, 2 * golden + 1)]
+points = {
+    tuple(round(sign * value, 9) + 0.0 for sign, value in zip(signs, np.roll(kind, turn)))
+    for kind in kinds for turn in range(3) for signs in product((1, -1), repeat=3)
+}
+shape = 1.43 / 2 * np.array(sorted(points)) + np.random.default_rng(7).normal(0, 0.01, (60, 3))
+best = float("inf")
+for attempt in range(int(sys.argv[1])):
+    start = time.perf_counter()
+    found = find_operations(["C"] * 60, shape)
+    best = min(best, time.perf_counter() - start)
+assert len(found.operations) == 120, f"{len(found.operations)} operations, not the 120 of Ih"
+print(json.dumps({"fullerene": best}))
+"""
+
+
+def molecule_rows(rounds: int, molecular: str) -> list[Row]:
+    """Molecules in a cell of 504 atoms against 5 datasets and 50 ms; group of C60, scattered by 0.01 Å, in 300 ms."""
+    best = child(TIME_ANALYSIS, molecular, str(rounds), "504")
+    added = 1e3 * (best["with molecules"] - best["analysis"])
+    allowance = 5e3 * best["dataset"] + 50
+    fullerene = 1e3 * child(TIME_FULLERENE, str(rounds))["fullerene"]
+    return [
+        Row("molecules of a cell of 504 atoms", added, "5 datasets + 50 ms", allowance, "ms", 1.0),
+        Row("point group of C60", fullerene, "300 ms", 300.0, "ms", 1.0),
+    ]
 
 
 # Memory ---------------------------------------------------------------------------------------------------------------
@@ -186,19 +240,50 @@ def memory_rows(large: str) -> list[Row]:
     return [Row(f"peak memory, {ATOMS} atoms in P-1", whole, "imports and reading", base, "MB", 2.0)]
 
 
-# The large cell -------------------------------------------------------------------------------------------------------
+# The large cells ------------------------------------------------------------------------------------------------------
 
 
 def write_large_cell(path: Path) -> None:
     """A triclinic cell with atoms on a shaken grid 3 Å wide, each with its inversion image; elements at random."""
     chance = random.Random(20_261)
-    points: dict[str, list[tuple[float, float, float]]] = {element: [] for element in ("Na", "K", "Cl", "Br")}
+    points: dict[str, list[Point]] = {element: [] for element in ("Na", "K", "Cl", "Br")}
     for i in range(ATOMS // 2):
         node = (i // 100, i // 10 % 10, i % 10)
         x, y, z = ((n + 0.5 + chance.uniform(-0.2, 0.2)) / 10 for n in node)
         points[chance.choice(list(points))] += [(x / 2, y, z), (1 - x / 2, 1 - y, 1 - z)]
-    lines = [f"{ATOMS} atoms in P-1, made at random", "1.0", "60.0 0.0 0.0", "2.9 30.3 0.0", "-3.7 1.3 30.7"]
-    lines += [" ".join(points), " ".join(str(len(group)) for group in points.values()), "Direct"]
+    write_poscar(path, f"{ATOMS} atoms in P-1, made at random", LARGE_CELL, points)
+
+
+def write_molecular_cell(path: Path) -> None:
+    """Benzene molecules in P-1: 21 pairs, each pair turned at random, on a grid 8 Å wide (504 atoms)."""
+    chance = random.Random(20_262)
+    points: dict[str, list[Point]] = {"C": [], "H": []}
+    for i in range(21):
+        first, second = orthogonal_pair(chance)
+        centre = ((i // 9 + 0.5) / 6, (i // 3 % 3 + 0.5) / 3, (i % 3 + 0.5) / 3)
+        for element, radius in (("C", 1.39), ("H", 2.48)):
+            for turn in range(6):
+                c, s = radius * math.cos(turn * math.pi / 3), radius * math.sin(turn * math.pi / 3)
+                shift = [c * u + s * v for u, v in zip(first, second, strict=True)]
+                x, y, z = (p + d / width for p, d, width in zip(centre, shift, (48.0, 24.3, 25.1), strict=True))
+                points[element] += [(x, y, z), (1 - x, 1 - y, 1 - z)]
+    write_poscar(path, "Benzene molecules in P-1, turned at random", MOLECULAR_CELL, points)
+
+
+def orthogonal_pair(chance: random.Random) -> tuple[Point, Point]:
+    """Two unit vectors at right angles, with the directions left to chance."""
+    polar, around, twist = math.acos(chance.uniform(-1, 1)), chance.uniform(0, math.tau), chance.uniform(0, math.tau)
+    down = (math.cos(polar) * math.cos(around), math.cos(polar) * math.sin(around), -math.sin(polar))
+    along = (-math.sin(around), math.cos(around), 0.0)
+    c, s = math.cos(twist), math.sin(twist)
+    mixed = [(c * u + s * v, c * v - s * u) for u, v in zip(down, along, strict=True)]
+    (a, d), (b, e), (c, f) = mixed
+    return (a, b, c), (d, e, f)
+
+
+def write_poscar(path: Path, title: str, cell: list[str], points: dict[str, list[Point]]) -> None:
+    """The points, in fractions of the cell, as a POSCAR file."""
+    lines = [title, "1.0", *cell, " ".join(points), " ".join(str(len(group)) for group in points.values()), "Direct"]
     lines += [f"{x:.10f} {y:.10f} {z:.10f}" for group in points.values() for x, y, z in group]
     path.write_text("\n".join(lines) + "\n", encoding="utf-8")
 
@@ -223,7 +308,10 @@ def main() -> int:
     with tempfile.TemporaryDirectory() as folder:
         large = Path(folder) / "large.vasp"
         write_large_cell(large)
-        rows = process_rows(rounds) + analysis_rows(rounds, str(large)) + memory_rows(str(large))
+        molecular = Path(folder) / "molecular.vasp"
+        write_molecular_cell(molecular)
+        rows = process_rows(rounds) + analysis_rows(rounds, str(large))
+        rows += molecule_rows(rounds, str(molecular)) + memory_rows(str(large))
     print_table(rows)
     return int(any(row.over for row in rows))
 
