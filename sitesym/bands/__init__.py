@@ -1,0 +1,1 @@
+"""Explanations of measured infrared and Raman bands, made from an analysis."""
