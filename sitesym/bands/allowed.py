@@ -1,0 +1,84 @@
+"""Reasons for bands that have a place among the allowed fundamentals: as what are they allowed?"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from sitesym.bands.assignment import Placed
+from sitesym.bands.inventory import Family
+from sitesym.bands.measurement import Band
+from sitesym.bands.reasons import Reason
+
+_SITE_REACH, _FIELD_REACH = 110.0, 45.0
+"""cm⁻¹ over which the score of a splitting halves: sites split by up to a hundred, units couple by some tens."""
+
+_WORDS = {"raman": "Raman", "infrared": "infrared"}
+
+
+def reasons_of_place(placed: Placed, siblings: Sequence[Band]) -> list[Reason]:
+    """Why a band stands in its family. `siblings` are all bands of that family and technique, itself included."""
+    family, band = placed.family, placed.band
+    assert family is not None
+    technique = band.technique
+    labels = tuple(one.label for one in family.active(technique))
+    if not family.is_internal:
+        argument = (
+            f"allowed as one of {family.capacity(technique)} {family.vibration} of the {family.unit} that "
+            f"{_WORDS[technique]} can show; symmetry fixes no wavenumbers"
+        )
+        return [Reason("fundamental", _fit(placed), argument, (), labels, "polarized spectra tell the species")]
+    if len(siblings) == 1 or band == _first(family, siblings):
+        return [_single(placed, family, labels)]
+    apart = abs(band.wavenumber - _first(family, siblings).wavenumber)
+    return _split(placed, family, labels, len(siblings), apart)
+
+
+def _fit(placed: Placed) -> float:
+    """A score that falls with the cost of the place."""
+    return 1 / (1 + 0.35 * placed.cost)
+
+
+def _first(family: Family, siblings: Sequence[Band]) -> Band:
+    """The band that keeps the name of the fundamental: the one nearest to the expected wavenumber."""
+    centre = family.wavenumber or sum(band.wavenumber for band in siblings) / len(siblings)
+    return min(siblings, key=lambda band: (abs(band.wavenumber - centre), band.wavenumber))
+
+
+def _single(placed: Placed, family: Family, labels: tuple[str, ...]) -> Reason:
+    technique = placed.band.technique
+    near = f", near {family.wavenumber:g} cm⁻¹ in the free unit" if family.wavenumber else ""
+    if family.free_allows(technique):
+        argument = f"allowed as the fundamental {family.name} ({family.free_species}{near})"
+        return Reason("fundamental", _fit(placed), argument, (), labels, "")
+    argument = (
+        f"{family.name} ({family.free_species}{near}) is forbidden in {_WORDS[technique]} for the free unit; its site "
+        "has less symmetry and allows it, usually weakly"
+    )
+    return Reason("site_activation", _fit(placed), argument, (), labels, "compare with the salt in solution")
+
+
+def _split(placed: Placed, family: Family, labels: tuple[str, ...], seen: int, apart: float) -> list[Reason]:
+    technique = placed.band.technique
+    site, crystal = family.site_bands(technique), family.capacity(technique)
+    reasons = []
+    if site > 1:
+        argument = (
+            f"allowed as a further component of {family.name} ({family.free_species}): the site lifts its degeneracy "
+            f"into {site} bands in {_WORDS[technique]}, {seen} are seen"
+        )
+        test = "isotopic dilution leaves site splitting and removes correlation-field splitting"
+        score = _fit(placed) / (1 + (apart / _SITE_REACH) ** 2)
+        reasons.append(Reason("site_splitting", score, argument, (), labels, test))
+    if crystal > site:
+        argument = (
+            f"allowed as a further component of {family.name} ({family.free_species}): coupling of the equivalent units "
+            f"gives up to {crystal} bands in {_WORDS[technique]}, the site alone {site}"
+        )
+        test = "isotopic dilution removes correlation-field splitting; polarized spectra tell the components"
+        share = 0.9 if site <= 1 or seen > site else 0.55
+        score = share * _fit(placed) / (1 + (apart / _FIELD_REACH) ** 2)
+        reasons.append(Reason("correlation_splitting", score, argument, (), labels, test))
+    if not reasons:
+        reasons.append(_single(placed, family, labels))
+    return reasons
+

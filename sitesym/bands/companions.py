@@ -1,0 +1,133 @@
+"""Reasons that follow a fundamental which was seen: longitudinal companions, isotopologues, leakage."""
+
+from __future__ import annotations
+
+import tomllib
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import lru_cache
+from importlib.resources import files
+
+from sitesym.analysis import Analysis
+from sitesym.bands.assignment import Placed
+from sitesym.bands.inventory import Family
+from sitesym.bands.measurement import RAMAN, Band
+from sitesym.bands.reasons import Reason
+from sitesym.errors import UsageError
+from sitesym.experiment.shown import what_it_shows
+from sitesym.geometry.notation import parse_geometry
+from sitesym.known_units import composition_of
+
+_LONGITUDINAL_REACH = 0.32
+"""Largest (LO − TO) / TO considered; the strongest polar modes of oxides reach it."""
+
+
+def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
+    """Longitudinal companions lie above the transverse mode of a polar species; Raman shows them without inversion."""
+    reasons = []
+    for one in placed:
+        family = one.family
+        if family is None or one.band is band or one.band.technique != band.technique:
+            continue
+        ratio = band.wavenumber / one.band.wavenumber - 1
+        polar = [part.label for part in family.active(band.technique) if part.activity.infrared]
+        if not 0.005 < ratio < _LONGITUDINAL_REACH or not polar or not family.free_infrared:
+            continue
+        argument = (
+            f"allowed as the longitudinal companion of {family.name} at {one.band.wavenumber:g} cm⁻¹: "
+            f"{', '.join(polar)} is polar, and longitudinal modes lie above the transverse ones"
+        )
+        test = (
+            "a geometry with the phonon's wavevector along the dipole shows LO, across it TO"
+            if band.technique == RAMAN
+            else "it appears at oblique incidence in p polarization, or in reflectance, not in a thin film at normal incidence"
+        )
+        score = 0.42 * (1 - ratio / _LONGITUDINAL_REACH) + 0.05
+        reasons.append(
+            Reason("longitudinal_companion", score, argument, (one.band.wavenumber,), tuple(polar), test)
+        )
+    return reasons
+
+
+def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family]) -> list[Reason]:
+    """Species that the stated geometry forbids but misalignment lets through."""
+    if not band.geometry or band.technique != RAMAN:
+        return []
+    try:
+        geometry = parse_geometry(band.geometry, analysis.symmetry.lattice)
+    except UsageError:
+        return []
+    shown = {one.label for one in what_it_shows(analysis, geometry).allowed}
+    reasons = []
+    for family in families:
+        low, high = family.window
+        hidden = [part.label for part in family.active(RAMAN) if part.label not in shown]
+        if not hidden or not low <= band.wavenumber <= high:
+            continue
+        argument = (
+            f"{', '.join(hidden)} of {family.name} is forbidden in {band.geometry}; tilt, aperture or birefringence may "
+            "let some of it through"
+        )
+        score = 0.5 if family.is_internal and family.wavenumber else 0.25
+        test = "turn the crystal by 90° or close the aperture: leakage changes, allowed bands stay"
+        reasons.append(Reason("leakage", score, argument, (), tuple(hidden), test))
+    return reasons
+
+
+@dataclass(frozen=True, slots=True)
+class Isotope:
+    """A rare isotope: element, name such as `13C`, natural abundance (0 to 1), its mass and that of the main one (u)."""
+
+    element: str
+    name: str
+    abundance: float
+    mass: float
+    main_mass: float
+
+
+@lru_cache(maxsize=1)
+def rare_isotopes() -> tuple[Isotope, ...]:
+    """All isotopes but the most abundant of each element, from the table of the data folder."""
+    text = files("sitesym").joinpath("data", "isotopes.toml").read_text(encoding="utf-8")
+    by_element: dict[str, list[tuple[str, float, float]]] = {}
+    for entry in tomllib.loads(text)["isotope"]:
+        by_element.setdefault(entry["element"], []).append((entry["name"], entry["abundance"], entry["mass"]))
+    found = []
+    for element, rows in by_element.items():
+        main = max(rows, key=lambda row: row[1])
+        found += [Isotope(element, name, share, mass, main[2]) for name, share, mass in rows if name != main[0]]
+    return tuple(found)
+
+
+def isotope_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
+    """Weak satellites of strong internal fundamentals: between no shift and that of an atom moving alone."""
+    reasons = []
+    for one in placed:
+        family = one.family
+        if family is None or not family.is_internal or one.band is band or one.band.technique != band.technique:
+            continue
+        for isotope in rare_isotopes():
+            reasons += _satellite(band, one.band, family, isotope)
+    return reasons
+
+
+def _satellite(band: Band, main: Band, family: Family, isotope: Isotope) -> list[Reason]:
+    number = dict(composition_of(family.unit)).get(isotope.element, 0)
+    share = number * isotope.abundance
+    if share < 0.003:
+        return []
+    farthest = main.wavenumber * (isotope.main_mass / isotope.mass) ** 0.5
+    low, high = sorted((farthest, main.wavenumber))
+    if not low - band.uncertainty <= band.wavenumber <= high + band.uncertainty or abs(
+        band.wavenumber - main.wavenumber
+    ) < max(3.0, band.uncertainty):
+        return []
+    if band.intensity and main.intensity and band.intensity > 6 * share * main.intensity:
+        return []
+    argument = (
+        f"allowed as {family.name} of units with {isotope.name} ({100 * share:.1f} % of them): between "
+        f"{main.wavenumber:g} cm⁻¹ and {farthest:.0f} cm⁻¹, where the atom would move alone"
+    )
+    test = f"its intensity against {main.wavenumber:g} cm⁻¹ is the abundance; enriched material settles it"
+    score = 0.3 + 0.6 * min(share, 0.3)
+    return [Reason("isotopologue", score, argument, (main.wavenumber,), (), test)]

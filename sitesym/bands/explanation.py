@@ -1,0 +1,124 @@
+"""The confrontation of measured bands with what symmetry allows: one result that all views read."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from sitesym.analysis import Analysis
+from sitesym.bands.allowed import reasons_of_place
+from sitesym.bands.assignment import Placed, assign
+from sitesym.bands.coincidence import Coincidences, coincidences
+from sitesym.bands.companions import isotope_reasons, leakage_reasons, longitudinal_reasons
+from sitesym.bands.inventory import Family, inventory
+from sitesym.bands.levels import level_reasons, parents_of, resonance_reasons
+from sitesym.bands.lowering import Lowering, lowerings
+from sitesym.bands.measurement import TECHNIQUES, Band
+from sitesym.bands.missing import Missing, missing_bands
+from sitesym.bands.reasons import Reason, ranked
+from sitesym.bands.surroundings import (
+    Suspect,
+    disorder_reasons,
+    lowering_reasons,
+    phase_reasons,
+    room_reasons,
+    unexplained,
+)
+from sitesym.errors import UsageError
+
+
+@dataclass(frozen=True, eq=False)
+class BandResult:
+    """One band: where it was put, and every reason found, the best first."""
+
+    placed: Placed
+    reasons: tuple[Reason, ...]
+
+    @property
+    def band(self) -> Band:
+        """The band itself."""
+        return self.placed.band
+
+    @property
+    def is_allowed(self) -> bool:
+        """Whether it has a place among the allowed fundamentals."""
+        return self.placed.family is not None
+
+
+@dataclass(frozen=True, eq=False)
+class Explanation:
+    """A whole spectrum explained.
+
+    families      what symmetry predicts; bands what was measured, in rising wavenumber within each technique.
+    missing       allowed but unseen, with reasons.
+    lowerings     lower symmetries that would account for what is left over.
+    coincidences  bands seen in both techniques, and how likely that is by accident.
+    """
+
+    analysis: Analysis
+    families: tuple[Family, ...]
+    bands: tuple[BandResult, ...]
+    missing: tuple[Missing, ...]
+    lowerings: tuple[Lowering, ...]
+    coincidences: Coincidences
+
+    def __repr__(self) -> str:
+        left = sum(not one.is_allowed for one in self.bands)
+        return f"Explanation({self.analysis.structure.formula}: {len(self.bands)} bands, {left} without a place)"
+
+
+def explain(
+    analysis: Analysis,
+    bands: Sequence[Band],
+    *,
+    suspects: Sequence[tuple[str, Analysis]] = (),
+    pinned: Sequence[tuple[float, str]] = (),
+    forbidden: Sequence[tuple[float, str]] = (),
+) -> Explanation:
+    """Explain measured bands.
+
+    suspects            names and analyses of other phases that may be there.
+    pinned, forbidden   (wavenumber, family name) pairs that the user insists on or rules out.
+
+    Raises UsageError when there are no bands.
+    """
+    if not bands:
+        raise UsageError("There are no bands to explain.", "Give a list of bands or a spectrum.")
+    ordered = sorted(bands, key=lambda band: (TECHNIQUES.index(band.technique), band.wavenumber))
+    families = inventory(analysis)
+    placed = assign(ordered, families, pinned=pinned, forbidden=forbidden)
+    lower = lowerings(analysis, families, ordered, placed)
+    others = tuple(Suspect(name, inventory(other)) for name, other in suspects)
+    results = tuple(BandResult(one, _reasons(analysis, families, placed, one, lower, others)) for one in placed)
+    return Explanation(
+        analysis, families, results, missing_bands(families, placed), lower, coincidences(analysis, families, ordered)
+    )
+
+
+def _reasons(
+    analysis: Analysis, families: Sequence[Family], placed: Sequence[Placed], one: Placed,
+    lower: Sequence[Lowering], suspects: Sequence[Suspect],
+) -> tuple[Reason, ...]:  # fmt: skip
+    band = one.band
+    others = [other for other in placed if other is not one]
+    parents = parents_of(others)
+    found = [
+        *resonance_reasons(analysis, band, others, parents),
+        *leakage_reasons(analysis, band, families),
+        *room_reasons(band),
+        *phase_reasons(band, suspects),
+        *longitudinal_reasons(band, others),
+        *isotope_reasons(band, others),
+    ]
+    if one.family is not None:
+        mine = [
+            other.band for other in placed if other.family is one.family and other.band.technique == band.technique
+        ]
+        return ranked([*reasons_of_place(one, mine), *found])
+    found += [
+        *level_reasons(analysis, band, parents),
+        *disorder_reasons(analysis, band, families),
+        *lowering_reasons(band, lower),
+        unexplained(band),
+    ]
+    return ranked(found)
