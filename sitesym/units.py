@@ -191,7 +191,7 @@ def customary(amounts: Mapping[str, float]) -> str:
     others = set(amounts) - set(hydrogens) - {"O"}
     if hydrogens and "O" in amounts and len(others) == 1:
         names = hydrogens + [name for name in names if name not in hydrogens]
-    if hydrogens and not others and sum(amounts[name] for name in hydrogens) < 1.5:
+    if hydrogens and "O" in amounts and not others and sum(amounts[name] for name in hydrogens) < 1.5:
         names = ["O", *hydrogens]
     return _written(names, amounts)
 

@@ -53,10 +53,16 @@ def test_csv_tables_hold_the_published_numbers(name: str) -> None:
     assert found == entry["contributions"]
 
 
-def test_csv_document_is_both_tables_and_an_empty_line() -> None:
-    first, second = csv_view.render(case("calcite")).split("\n\n")
+def test_csv_document_is_its_tables_with_empty_lines_between() -> None:
+    first, second, third = csv_view.render(case("calcite")).split("\n\n")
     assert first + "\n" == csv_view.species_table(case("calcite"))
-    assert second == csv_view.sites_table(case("calcite"))
+    assert second + "\n" == csv_view.sites_table(case("calcite"))
+    assert third == csv_view.molecules_table(case("calcite"))
+
+
+def test_csv_has_no_table_of_molecules_where_there_are_none() -> None:
+    """Rutile is a three-dimensional net."""
+    assert len(csv_view.render(case("rutile")).split("\n\n")) == 2
 
 
 @pytest.mark.parametrize("label", [FORMULA, "+1", "-1+2", "@SUM(A1)", "\t=1", "\r=1", "  =1", "=HYPERLINK(1)"])
@@ -186,7 +192,9 @@ def tables_of(document: str) -> list[list[list[str]]]:
 @pytest.mark.parametrize("name", NAMES)
 def test_markdown_tables_hold_the_published_numbers(name: str) -> None:
     entry = ENTRIES[name]
-    counts, species, sites, contributions, *_ = tables_of(markdown.render(case(name)))
+    tables = tables_of(markdown.render(case(name)))
+    at = next(k for k, table in enumerate(tables) if table[0][:2] == ["species", "total"])
+    counts, (species, sites, contributions) = tables[0], tables[at : at + 3]
     assert {ascii_labels(row[0]): int(row[3]) for row in species[1:] if row[3] != "0"} == entry["optic"]
     answer = {row[0]: (int(row[1]), sum_of(row[2])) for row in counts[1:]}
     for title, key in (("Infrared", "infrared"), ("Raman", "raman"), ("Silent", "silent")):

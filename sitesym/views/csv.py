@@ -1,4 +1,7 @@
-"""Two tables as comma-separated values: the species, then, after an empty line, the sites.
+"""Tables as comma-separated values, an empty line between two: species, sites, and the correlation of molecules.
+
+The last one is the correlation diagram: one row for each path from a species of the free unit by way of the site to a
+species of the crystal. It is left out where there are no molecules.
 
 Names in structure files are written by strangers, and a spreadsheet runs what begins like a formula: a text cell that
 begins with one of = + - @, a tab or a carriage return gets an apostrophe in front (common practice).
@@ -12,6 +15,9 @@ from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
 from sitesym.views.labels import printable
+from sitesym.views.molecule_json import ascii_words
+from sitesym.views.molecule_sentences import ORIGINS
+from sitesym.views.molecule_tables import Path, molecules, paths
 from sitesym.views.sentences import infrared_words, raman_words, resonance_words
 
 if TYPE_CHECKING:
@@ -22,22 +28,36 @@ _FORMULA = ("=", "+", "-", "@", "\t", "\r")
 
 SPECIES_COLUMNS = (
     "species", "dimension", "total", "acoustic", "optic", "infrared", "raman", "hyper_raman", "silent",
-    "infrared_polarization", "raman_elements", "resonance_elements",
+    "infrared_polarization", "raman_elements", "resonance_elements", *ORIGINS,
 )  # fmt: skip
 SITE_COLUMNS = (
     "label", "element", "occupancy", "wyckoff", "multiplicity", "count_primitive", "site_group", "site_group_symbol",
     "x", "y", "z",
 )  # fmt: skip
+MOLECULE_COLUMNS = (
+    "molecule", "formula", "first_atom", "count_primitive", "free_group", "site_group", "site_group_symbol",
+    "factor_group", "motion", "kind", "names", "wavenumbers", "free_species", "free_count", "free_infrared",
+    "free_raman", "site_species", "site_count", "site_infrared", "site_raman", "crystal_species", "crystal_count",
+    "infrared", "raman", "infrared_polarization",
+)  # fmt: skip
 
 
 def render(analysis: Analysis) -> str:
-    """Both tables as one text."""
-    return f"{species_table(analysis)}\n{sites_table(analysis)}"
+    """All tables as one text."""
+    tables = [species_table(analysis), sites_table(analysis)]
+    if molecules(analysis):
+        tables.append(molecules_table(analysis))
+    return "\n".join(tables)
 
 
 def species_table(analysis: Analysis) -> str:
     """One row a species of the factor group, those without modes included."""
-    return _table(SPECIES_COLUMNS, map(_species_cells, analysis.species))
+    origins = analysis.molecular.origins if analysis.molecular else {}
+    rows = [
+        (*_species_cells(row), *(getattr(origins[row.label], name) if origins else "" for name in ORIGINS))
+        for row in analysis.species
+    ]
+    return _table(SPECIES_COLUMNS, rows)
 
 
 def _species_cells(row: SpeciesRow) -> tuple[Cell, ...]:
@@ -61,6 +81,30 @@ def _site_cells(row: SiteRow) -> tuple[Cell, ...]:
     return (
         row.label, row.element, row.occupancy, row.wyckoff, row.multiplicity, row.count, row.group.schoenflies,
         row.symbol, x, y, z,
+    )  # fmt: skip
+
+
+def molecules_table(analysis: Analysis) -> str:
+    """One row a path of the correlation diagrams. `crystal_count` is that of one motion and one species of the site."""
+    rows = [
+        _path_cells(analysis, number, path)
+        for number, row in enumerate(molecules(analysis), start=1)
+        for path in paths(row)
+    ]
+    return _table(MOLECULE_COLUMNS, rows)
+
+
+def _path_cells(analysis: Analysis, number: int, path: Path) -> tuple[Cell, ...]:
+    row, stages = path.molecule, (path.free, path.site, path.crystal)
+    assert row.units.site_group is not None
+    activity = [(_yes(one.activity.infrared), _yes(one.activity.raman)) for one in stages]
+    return (
+        number, row.name, next(iter(row.units.unit.labels), ""), row.units.count,
+        ascii_words(row.free.group.schoenflies), row.units.site_group.schoenflies, row.symbol,
+        analysis.factor_group.schoenflies, path.motion, path.kind, ascii_words(path.names),
+        " ".join(f"{value:g}" for value in path.wavenumbers), path.free.label, path.free.count, *activity[0],
+        path.site.label, path.site.count, *activity[1], path.crystal.label, path.crystal.count, *activity[2],
+        _ascii(infrared_words(analysis.species_row(path.crystal.label))),
     )  # fmt: skip
 
 

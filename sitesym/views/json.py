@@ -10,6 +10,8 @@ import json
 from typing import TYPE_CHECKING, Any
 
 from sitesym.version import __version__
+from sitesym.views.labels import characters
+from sitesym.views.molecule_json import bands, molecules, units
 
 if TYPE_CHECKING:
     import numpy as np
@@ -32,8 +34,8 @@ def render(analysis: Analysis) -> str:
 def document(analysis: Analysis) -> Document:
     """The document as plain dictionaries, lists, strings, numbers, booleans and None.
 
-    The molecular part of an analysis is not in the document yet: `molecules` is empty, and the species'
-    `translational`, `librational` and `internal` are None, which means not counted and not zero.
+    Where molecules were not looked for, `molecules` and `units` are empty, and the species' `translational`,
+    `librational`, `internal` and `framework` are None, which means not counted and not zero.
     """
     return {
         "schema": SCHEMA,
@@ -42,19 +44,21 @@ def document(analysis: Analysis) -> Document:
         "space_group": _space_group(analysis),
         "factor_group": _factor_group(analysis),
         "sites": [_site(row) for row in analysis.sites],
-        "species": [_species(row) for row in analysis.species],
+        "species": [_species(analysis, row) for row in analysis.species],
         "totals": _totals(analysis),
         "settings": _settings(analysis),
-        "molecules": [],
+        "molecules": molecules(analysis),
+        "units": units(analysis),
+        "expected_bands": bands(analysis),
     }
 
 
 def _input(analysis: Analysis) -> Document:
     structure = analysis.structure
     return {
-        "path": _characters(structure.source),
+        "path": characters(structure.source),
         "format": structure.format,
-        "name": _characters(structure.name),
+        "name": characters(structure.name),
         "formula": structure.formula,
         "atoms_in_cell": len(structure),
         "ordered": analysis.is_ordered,
@@ -62,21 +66,16 @@ def _input(analysis: Analysis) -> Document:
     }
 
 
-def _characters(text: str) -> str:
-    """Bytes of a file name that are no text become replacement characters; strict readers refuse lone surrogates."""
-    return text.encode("utf-8", "surrogateescape").decode("utf-8", "replace")
-
-
 def _warning(question: OpenQuestion) -> Document:
-    return {"code": question.code, "message": _characters(question.message)}
+    return {"code": question.code, "message": characters(question.message)}
 
 
 def _space_group(analysis: Analysis) -> Document:
     symmetry, declared, scan = analysis.symmetry, analysis.structure.declared, analysis.scan
     stated = {
         "number": declared.number,
-        "hermann_mauguin": declared.hermann_mauguin and _characters(declared.hermann_mauguin),
-        "hall": declared.hall and _characters(declared.hall),
+        "hermann_mauguin": declared.hermann_mauguin and characters(declared.hermann_mauguin),
+        "hall": declared.hall and characters(declared.hall),
     }
     return {
         "number": symmetry.number,
@@ -120,7 +119,7 @@ def _factor_group(analysis: Analysis) -> Document:
 
 def _site(row: SiteRow) -> Document:
     return {
-        "label": _characters(row.label),
+        "label": characters(row.label),
         "element": row.element,
         "occupancy": float(row.occupancy),
         "wyckoff": row.wyckoff,
@@ -133,7 +132,8 @@ def _site(row: SiteRow) -> Document:
     }
 
 
-def _species(row: SpeciesRow) -> Document:
+def _species(analysis: Analysis, row: SpeciesRow) -> Document:
+    origin = analysis.molecular.origins[row.label] if analysis.molecular else None
     return {
         "label": row.label,
         "dimension": row.dimension,
@@ -149,9 +149,10 @@ def _species(row: SpeciesRow) -> Document:
         "rotations": list(row.activity.rotations),
         "raman_tensor": _tensor(row),
         "resonance": list(row.tensor.antisymmetric),
-        "translational": None,
-        "librational": None,
-        "internal": None,
+        "translational": origin.translational if origin else None,
+        "librational": origin.librational if origin else None,
+        "internal": origin.internal if origin else None,
+        "framework": origin.framework if origin else None,
     }
 
 

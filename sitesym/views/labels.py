@@ -31,6 +31,11 @@ def printable(text: str) -> str:
     return "".join("\N{REPLACEMENT CHARACTER}" if unicodedata.category(one) in _HIDDEN else one for one in one_line)
 
 
+def characters(text: str) -> str:
+    """The text with bytes of a file name that are no text replaced: strict readers refuse lone surrogates."""
+    return text.encode("utf-8", "surrogateescape").decode("utf-8", "replace")
+
+
 def _parts(label: str) -> tuple[str, str, str, str, str]:
     matched = _SPECIES.fullmatch(label)
     if matched is None:
@@ -193,6 +198,8 @@ def _latex_character(one: str) -> str:
         return one
     if unicodedata.decomposition(one).startswith("<sub>"):
         return f"$_{{{unicodedata.normalize('NFKD', one)}}}$"
+    if unicodedata.decomposition(one).startswith("<super>"):
+        return f"$^{{{unicodedata.normalize('NFKD', one).replace('−', '-')}}}$"
     greek = _GREEK_NAME.fullmatch(unicodedata.name(one, ""))
     return f"$\\{greek[1].lower()}$" if greek else f"(U+{ord(one):04X})"
 

@@ -7,12 +7,13 @@ from typing import TYPE_CHECKING
 
 from sitesym.tensors import element_expressions
 from sitesym.version import __version__
-from sitesym.views import sentences
+from sitesym.views import molecule_sentences, molecule_tables, sentences
 from sitesym.views.labels import LATEX, decomposition
 from sitesym.views.method import paragraphs, references
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+    from sitesym.molecular import MoleculeRow
 
 _plain = LATEX.plain
 
@@ -24,6 +25,9 @@ def render(analysis: Analysis) -> str:
         _cautions(analysis),
         _species_table(analysis),
         _list("Notes:", sentences.notes(analysis, LATEX)),
+        _origins(analysis),
+        *_molecules(analysis),
+        _bands(analysis),
         _sites_table(analysis),
         _contributions(analysis),
         _tensors(analysis),
@@ -83,6 +87,59 @@ def _species_line(row: SpeciesRow) -> tuple[str, ...]:
     counts = (str(row.total), str(row.acoustic), str(row.optic))
     hyper = "yes" if row.activity.hyper_raman else ""
     return (LATEX.species(row.label), *counts, infrared, _plain(sentences.raman_words(row)), hyper)
+
+
+def _origins(analysis: Analysis) -> list[str]:
+    if analysis.molecular is None:
+        return []
+    names = molecule_sentences.ORIGINS
+    rows = [
+        (LATEX.species(row.label), str(row.optic), *(str(getattr(origin, name)) for name in names))
+        for row in analysis.species
+        for origin in (analysis.molecular.origins[row.label],)
+    ]
+    caption = f"Origin of the optic modes of {_crystal(analysis)}. {molecule_sentences.origin_note(LATEX)}"
+    return _table(caption, "lr" + "r" * len(names), ("species", "optic", *names), rows)
+
+
+def _molecules(analysis: Analysis) -> list[list[str]]:
+    """For each kind of molecule the table of its correlation and the sentences on its vibrations."""
+    parts = [_list("Units:", molecule_sentences.units_words(analysis, LATEX))]
+    notes = [
+        *molecule_sentences.net_sentences(analysis, LATEX), *molecule_sentences.inequivalent_sentences(analysis, LATEX),
+    ]  # fmt: skip
+    parts.append(_list("On the units:", notes))
+    for row in molecule_tables.molecules(analysis):
+        parts += [_correlation(analysis, row), _list("In words:", _sentences(analysis, row))]
+    return parts
+
+
+def _correlation(analysis: Analysis, row: MoleculeRow) -> list[str]:
+    facts = "; ".join(
+        f"{name.lower()} {words}" for name, words in molecule_sentences.facts(analysis, row, LATEX)
+        if name not in ("Bonds", "Wavenumbers")
+    )  # fmt: skip
+    caption = (
+        f"{molecule_sentences.title(row, analysis, LATEX)} of {_crystal(analysis)}; {facts}. "
+        f"{_plain(molecule_sentences.LEGEND.partition(' T ')[0])}"
+    )
+    cells = molecule_tables.stage_cells(analysis, row, LATEX)
+    return _table(caption, "l" * len(molecule_tables.HEADER), molecule_tables.HEADER, cells)
+
+
+def _sentences(analysis: Analysis, row: MoleculeRow) -> list[str]:
+    return [
+        *molecule_sentences.remarks(analysis, row, LATEX),
+        *molecule_sentences.vibration_sentences(analysis, row, LATEX),
+        molecule_sentences.exclusion_sentence(analysis, row, LATEX),
+    ]
+
+
+def _bands(analysis: Analysis) -> list[str]:
+    cells = molecule_tables.band_cells(analysis, LATEX)
+    caption = f"Where internal vibrations of {_crystal(analysis)} are expected. {_plain(molecule_sentences.BAND_NOTE)}"
+    header = ("cm$^{-1}$", *molecule_tables.BAND_HEADER[1:])
+    return _table(caption, "rlllll", header, cells) if cells else []
 
 
 def _sites_table(analysis: Analysis) -> list[str]:

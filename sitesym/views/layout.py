@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import re
 import unicodedata
 from collections.abc import Iterable, Sequence
 
 WIDTH = 80
 ZERO = "·"
+NO_BREAK = "\u00a0"
+"""A space at which `wrap` breaks no line; it is printed as an ordinary one."""
 
 
 def width(text: str) -> int:
@@ -54,12 +57,12 @@ def wrap(text: str, indent: str = "", first: str | None = None, size: int = WIDT
             current, empty = indent, True
         current += word if empty else f" {word}"
         empty = False
-    return [*lines, current]
+    return [line.replace(NO_BREAK, " ") for line in (*lines, current)]
 
 
 def _words(text: str, size: int) -> Iterable[str]:
     """The words of a text, those longer than a line cut to pieces."""
-    for word in text.split():
+    for word in re.split(r"[ \t\r\n\f\v]+", text.strip()):
         while width(word) > size:
             head = clip(word, size).removesuffix("…")
             yield head

@@ -6,12 +6,13 @@ from collections.abc import Iterable, Sequence
 from typing import TYPE_CHECKING
 
 from sitesym.tensors import element_expressions
-from sitesym.views import sentences
+from sitesym.views import molecule_sentences, molecule_tables, sentences
 from sitesym.views.labels import MARKDOWN, decomposition
 from sitesym.views.method import paragraphs, references
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+    from sitesym.molecular import MoleculeRow
 
 _plain = MARKDOWN.plain
 
@@ -19,6 +20,7 @@ _plain = MARKDOWN.plain
 def render(analysis: Analysis) -> str:
     """The whole report, ending in a line feed."""
     sections = (
+        *_unit_sections(analysis),
         ("Species", [*_species_table(analysis), "", *(f"- {note}" for note in sentences.notes(analysis, MARKDOWN))]),
         ("Sites", _sites_table(analysis)),
         ("What each site contributes", _contributions(analysis)),
@@ -42,6 +44,7 @@ def _answer(analysis: Analysis) -> list[str]:
         ("Axes", analysis.axes),
         ("Atoms", sentences.atoms_words(analysis)),
     )
+    units = "; ".join(molecule_sentences.units_words(analysis, MARKDOWN))
     return [
         f"# {title}",
         "",
@@ -49,6 +52,7 @@ def _answer(analysis: Analysis) -> list[str]:
         f"- Space group: {sentences.space_group_words(analysis, MARKDOWN)}",
         f"- Factor group: {sentences.factor_group_words(analysis, MARKDOWN)}",
         *(f"- {name}: {_plain(words)}" for name, words in fields if words),
+        *([f"- Units: {units}"] if units else []),
         f"- Γ(optic) = {sentences.optic_sum(analysis, MARKDOWN)}",
         f"- Γ(acoustic) = {sentences.acoustic_sum(analysis, MARKDOWN)}",
         *(f"- **Caution:** {_plain(one.message)}" for one in sentences.other_cautions(analysis)),
@@ -68,8 +72,13 @@ def _table(header: Sequence[str], rows: Iterable[Sequence[str]], align: str) -> 
 
 
 def _species_table(analysis: Analysis) -> list[str]:
-    header = ("species", "total", "acoustic", "optic", "infrared", "Raman", "hyper-Raman")
-    return _table(header, map(_species_line, analysis.species), "<>>><<<")
+    origins = analysis.molecular.origins if analysis.molecular else {}
+    names = molecule_sentences.ORIGINS if origins else ()
+    header = ("species", "total", "acoustic", "optic", "infrared", "Raman", "hyper-Raman", *names)
+    rows = [
+        (*_species_line(row), *(str(getattr(origins[row.label], name)) for name in names)) for row in analysis.species
+    ]
+    return _table(header, rows, "<>>><<<" + ">" * len(names))
 
 
 def _species_line(row: SpeciesRow) -> tuple[str, ...]:
@@ -77,6 +86,34 @@ def _species_line(row: SpeciesRow) -> tuple[str, ...]:
     hyper = "yes" if row.activity.hyper_raman else ""
     counts = (str(row.total), str(row.acoustic), str(row.optic))
     return (MARKDOWN.species(row.label), *counts, infrared, sentences.raman_words(row), hyper)
+
+
+def _unit_sections(analysis: Analysis) -> list[tuple[str, list[str]]]:
+    """The units, each kind of molecule from the free unit to the crystal, and where bands are expected."""
+    notes = [
+        *molecule_sentences.net_sentences(analysis, MARKDOWN),
+        *molecule_sentences.inequivalent_sentences(analysis, MARKDOWN),
+    ]
+    sections = [("Units", [f"- {note}" for note in notes])]
+    for row in molecule_tables.molecules(analysis):
+        sections.append((molecule_sentences.title(row, analysis, MARKDOWN), _molecule(analysis, row)))
+    bands = molecule_tables.band_cells(analysis, MARKDOWN)
+    if bands:
+        table = _table(molecule_tables.BAND_HEADER, bands, "><<<<<")
+        sections.append(("Where internal vibrations are expected", [*table, "", _plain(molecule_sentences.BAND_NOTE)]))
+    return sections
+
+
+def _molecule(analysis: Analysis, row: MoleculeRow) -> list[str]:
+    facts = [f"- {name}: {words}" for name, words in molecule_sentences.facts(analysis, row, MARKDOWN)]
+    facts += [f"- **Caution:** {words}" for words in molecule_sentences.remarks(analysis, row, MARKDOWN)]
+    cells = molecule_tables.stage_cells(analysis, row, MARKDOWN)
+    return [
+        *facts, "", *_table(molecule_tables.HEADER, cells, "<" * len(molecule_tables.HEADER)), "",
+        _plain(molecule_sentences.LEGEND.partition(" T ")[0]), "",
+        *(f"- {one}" for one in molecule_sentences.vibration_sentences(analysis, row, MARKDOWN)),
+        f"- {molecule_sentences.exclusion_sentence(analysis, row, MARKDOWN)}",
+    ]  # fmt: skip
 
 
 def _sites_table(analysis: Analysis) -> list[str]:

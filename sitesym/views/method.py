@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from functools import lru_cache
 from typing import TYPE_CHECKING
 
+from sitesym.molecule_symmetry import DEFAULT_TOLERANCE
 from sitesym.version import __version__
 from sitesym.views.labels import TEXT, Style
 from sitesym.views.sentences import factor_group_words, fill, scan_runs, space_group_words
@@ -32,6 +33,7 @@ def paragraphs(analysis: Analysis, style: Style = TEXT) -> tuple[Paragraph, ...]
         ("Counting", _counting(analysis, style)),
         ("Selection rules", _rules(analysis, style)),
         ("Axes and labels", _axes(analysis, style)),
+        *([("Molecules and ions", _molecules(analysis, style))] if analysis.molecular else []),
         ("Limits", _limits(analysis, style)),
     )
     return tuple(Paragraph(heading, text) for heading, text in made)
@@ -40,12 +42,16 @@ def paragraphs(analysis: Analysis, style: Style = TEXT) -> tuple[Paragraph, ...]
 def references(analysis: Analysis) -> tuple[str, ...]:
     """The cited publications as plain text, in the order of their numbers, which start at 1."""
     table = _table()
-    return tuple(table[key] for key in _ORDER)
+    cited = _ORDER if analysis.molecular else tuple(key for key in _ORDER if key not in _OF_MOLECULES)
+    return tuple(table[key] for key in cited)
 
 
+_OF_MOLECULES = (
+    "covalent_radii", "internal_coordinates", "correlation_field", "unit_cell_group", "correlation_method",
+)  # fmt: skip
 _ORDER = (
     "space_group_search", "international_tables", "site_group", "site_tables", "factor_group", "hyper_raman",
-    "raman_tensors", "axes", "notation",
+    "raman_tensors", "axes", "notation", *_OF_MOLECULES,
 )  # fmt: skip
 
 
@@ -142,6 +148,25 @@ def _labelling(analysis: Analysis) -> str:
     if name in ("D4", "C4v", "D4h", "D6", "C6v", "D6h"):
         return "B1 is symmetric under the elements in the second place of the Hermann-Mauguin symbol."
     return ""
+
+
+def _molecules(analysis: Analysis, style: Style) -> str:
+    molecular = analysis.molecular
+    assert molecular is not None
+    tolerance = molecular.tolerance or DEFAULT_TOLERANCE
+    return fill(
+        style,
+        "Atoms were taken as bonded by their distances and covalent radii {radii} and by the chemistry of the elements; "
+        "the reason stands with each unit. Point groups of free units were found from their positions at a tolerance "
+        f"of {tolerance:g} Å. Their internal vibrations were divided into stretching, bending, out-of-plane, torsional "
+        "and skeletal ones by the representations of internal coordinates, redundancies removed {coordinates}. Internal "
+        "vibrations, librations and translations were followed from the free unit through its site group to the factor "
+        "group {correlation} by the actual operations of the crystal, not by tables. Their sum equals the count by "
+        "atomic sites, species by species; chains, layers and nets were counted by atomic sites.",
+        radii=_cite("covalent_radii"),
+        coordinates=_cite("internal_coordinates"),
+        correlation=_cite("site_group", "correlation_field", "unit_cell_group", "correlation_method"),
+    )
 
 
 def _limits(analysis: Analysis, style: Style) -> str:

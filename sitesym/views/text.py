@@ -11,6 +11,8 @@ from sitesym.views import sentences
 from sitesym.views.labels import TEXT, decomposition, printable
 from sitesym.views.layout import WIDTH, ZERO, clip, clip_start, side_by_side, table, width, wrap
 from sitesym.views.method import paragraphs, references
+from sitesym.views.molecule_sentences import units_words
+from sitesym.views.molecule_text import origins, unit_sections
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
@@ -26,7 +28,9 @@ def render(analysis: Analysis) -> str:
     screen, left_out = first_screen(analysis)
     sections = (
         ("All cautions", _all_cautions(analysis) if left_out else []),
+        *unit_sections(analysis),
         ("Species", [*_species_table(analysis), "", *_notes(analysis)]),
+        ("Where the optic modes come from", origins(analysis)),
         ("Sites", _sites_table(analysis)),
         ("What each site contributes", _contributions(analysis)),
         ("Raman tensors", _tensors(analysis)),
@@ -89,6 +93,7 @@ def _crystal(analysis: Analysis) -> list[str]:
         ("Factor group", sentences.factor_group_words(analysis)),
         ("Axes", printable(analysis.axes)),
         ("Atoms", sentences.atoms_words(analysis)),
+        ("Units", clip("; ".join(units_words(analysis)), 2 * (WIDTH - _FIELD) - 4)),
     )
     return [line for name, words in fields if words for line in _field(name, words)]
 
