@@ -179,7 +179,7 @@ def analyse(
     Raises UsageError for arguments that make no sense, InconsistencyError when two routes to a number disagree.
     """
     symmetry = find_symmetry(structure, tolerance, axes=axes, setting=setting)
-    sites = tuple(_site_row(symmetry, orbit) for orbit in symmetry.orbits)
+    sites = _site_rows(symmetry)
     whole = checked_sum(symmetry, (row.contribution for row in sites))
     species = _species_rows(symmetry, whole)
     scanned = scan_tolerance(symmetry) if scan else None
@@ -190,15 +190,41 @@ def analyse(
     )  # fmt: skip
 
 
-def _site_row(symmetry: CrystalSymmetry, orbit: Orbit) -> SiteRow:
-    site = symmetry.structure.sites[orbit.site]
+@dataclass(frozen=True, eq=False)
+class _SiteKind:
+    """What all orbits kept by the same operations have in common; the names are those of `SiteRow`."""
+
+    group: PointGroup
+    symbol: str
+    site_species: Multiplicities
+    contribution: Multiplicities
+
+
+def _site_rows(symmetry: CrystalSymmetry) -> tuple[SiteRow, ...]:
+    kinds: dict[bytes, _SiteKind] = {}
+    for orbit in symmetry.orbits:
+        if orbit.stabiliser.tobytes() not in kinds:
+            kinds[orbit.stabiliser.tobytes()] = _site_kind(symmetry, orbit)
+    return tuple(_site_row(symmetry, orbit, kinds[orbit.stabiliser.tobytes()]) for orbit in symmetry.orbits)
+
+
+def _site_kind(symmetry: CrystalSymmetry, orbit: Orbit) -> _SiteKind:
     group = symmetry.site_group(orbit)
     vectors = group.matrices.trace(axis1=1, axis2=2)
-    x, y, z = (float(value) for value in symmetry.positions[orbit.atoms[0]])
+    return _SiteKind(
+        group,
+        oriented_symbol(group, symmetry.lattice, symmetry.number),
+        reduce_characters(group.species, vectors),
+        site_contribution(symmetry, orbit),
+    )
+
+
+def _site_row(symmetry: CrystalSymmetry, orbit: Orbit, kind: _SiteKind) -> SiteRow:
+    site = symmetry.structure.sites[orbit.site]
+    x, y, z = symmetry.positions[orbit.atoms[0]].tolist()
     return SiteRow(
-        site.label, site.element, site.occupancy, orbit.wyckoff, orbit.multiplicity, len(orbit.atoms), group,
-        oriented_symbol(group, symmetry.lattice, symmetry.number), reduce_characters(group.species, vectors),
-        site_contribution(symmetry, orbit), (x, y, z),
+        site.label, site.element, site.occupancy, orbit.wyckoff, orbit.multiplicity, len(orbit.atoms), kind.group,
+        kind.symbol, kind.site_species, kind.contribution, (x, y, z),
     )  # fmt: skip
 
 

@@ -112,37 +112,47 @@ def units_of_crystal(
     contents = [{one.element: one.occupancy for one in site.occupants} for site in sites]
     labels = [site.label for site in sites]
     units = find_units(bonds, len(sites), cell.structure.elements, labels, contents=contents)
-    owner = _owners(units, len(sites))
+    division = _Partition.of(units, len(sites))
     sets: list[UnitSet] = []
     done: set[int] = set()
     for index, unit in enumerate(units):
         if index not in done:
-            reached = owner[symmetry.images[0][:, unit.atoms]]
+            reached = division.owner[symmetry.images[0][:, unit.atoms]]
             members = sorted(set(reached.ravel().tolist()))
             done.update(members)
-            sets.append(_unit_set(symmetry, cell, bonds, units, owner, index, members, tolerance))
+            sets.append(_unit_set(symmetry, cell, bonds, division, index, members, tolerance))
     return tuple(sets)
 
 
-def _owners(units: Sequence[Unit], count: int) -> Integers:
-    owner = np.zeros(count, dtype=np.int64)
-    for index, unit in enumerate(units):
-        owner[unit.atoms] = index
-    return owner
+@dataclass(frozen=True, eq=False)
+class _Partition:
+    """The units as a division of all n atoms: (n,) number of each atom's unit and (n, 3) its translation there."""
+
+    units: Sequence[Unit]
+    owner: Integers
+    shifts: Integers
+
+    @classmethod
+    def of(cls, units: Sequence[Unit], count: int) -> _Partition:
+        owner, shifts = np.zeros(count, dtype=np.int64), np.zeros((count, 3), dtype=np.int64)
+        for index, unit in enumerate(units):
+            owner[unit.atoms] = index
+            shifts[unit.atoms] = unit.shifts
+        return cls(units, owner, shifts)
 
 
 def _unit_set(
-    symmetry: CrystalSymmetry, cell: PrimitiveCell, bonds: Bonds, units: Sequence[Unit], owner: Integers,
+    symmetry: CrystalSymmetry, cell: PrimitiveCell, bonds: Bonds, division: _Partition,
     index: int, members: list[int], tolerance: float | None,
 ) -> UnitSet:  # fmt: skip
-    unit = units[index]
-    atoms = np.concatenate([units[member].atoms for member in members])
+    unit = division.units[index]
+    atoms = np.concatenate([division.units[member].atoms for member in members])
     points = cell.structure.fractional[unit.atoms] + unit.shifts
     centre = points.mean(axis=0) @ cell.basis
     obstacle = _obstacle(points @ cell.structure.lattice)
     if unit.dimension > 0 or obstacle:
         return UnitSet(unit, len(members), None, None, centre, atoms, None, obstacle)
-    kept = _stabiliser(symmetry, cell, unit, units, owner, index)
+    kept = _stabiliser(symmetry, cell, division, index)
     if len(kept) * len(members) != len(symmetry.factor_group):
         raise InconsistencyError(
             f"{len(members)} equivalent units {unit.formula} and a site group of order {len(kept)} do not make a "
@@ -171,25 +181,22 @@ def _obstacle(points: Floats) -> str:
     )
 
 
-def _stabiliser(
-    symmetry: CrystalSymmetry, cell: PrimitiveCell, unit: Unit, units: Sequence[Unit], owner: Integers, index: int
-) -> Integers:
-    """Operations that carry the unit to itself; every other must carry it to another whole unit.
+def _stabiliser(symmetry: CrystalSymmetry, cell: PrimitiveCell, division: _Partition, index: int) -> Integers:
+    """Operations that carry a unit to itself; every other must carry it to another whole unit.
 
     Raises InconsistencyError where an image is no unit.
     """
-    place = {int(atom): k for unit_ in units for k, atom in enumerate(unit_.atoms)}
+    unit = division.units[index]
     kept = []
     for operation in range(len(symmetry.factor_group)):
         atoms, shifts = moved(symmetry, cell, operation, unit.atoms, unit.shifts)
-        image = units[int(owner[atoms[0]])]
-        stored = image.shifts[[place[int(atom)] for atom in atoms]]
-        if len(set(owner[atoms].tolist())) > 1 or np.ptp(shifts - stored, axis=0).any():
+        owners, away = division.owner[atoms], shifts - division.shifts[atoms]
+        if (owners != owners[0]).any() or (away != away[0]).any():
             raise InconsistencyError(
                 f"An operation of the crystal tears the unit {unit.formula} apart.",
                 "The bonds found are not symmetric; name the units with --unit, --bond or --no-bond.",
             )
-        if int(owner[atoms[0]]) == index:
+        if owners[0] == index:
             kept.append(operation)
     return np.array(kept, dtype=np.int64)
 
