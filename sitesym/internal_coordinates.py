@@ -7,12 +7,12 @@ used, so their scale does not matter and redundancies take care of themselves.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from itertools import combinations
 
 import numpy as np
 
-from sitesym.groups.operation import Floats
+from sitesym.groups.operation import Floats, Integers
 
 Bonds = Sequence[tuple[int, int]]
 _STRAIGHT = np.cos(np.radians(5.0))
@@ -23,136 +23,131 @@ _PLANAR = 0.1
 
 def neighbours(count: int, bonds: Bonds) -> list[list[int]]:
     """For each of `count` atoms those bonded to it, in order."""
-    found: list[list[int]] = [[] for _ in range(count)]
+    found: list[set[int]] = [set() for _ in range(count)]
     for i, j in bonds:
-        found[i].append(j)
-        found[j].append(i)
-    return [sorted(set(one)) for one in found]
+        found[i].add(j)
+        found[j].add(i)
+    return [sorted(one) for one in found]
 
 
 def stretches(positions: Floats, bonds: Bonds) -> Floats:
     """(bonds, 3n) displacement vectors of the bond lengths."""
-    return _rows(positions, ({i: -_unit(positions, i, j), j: _unit(positions, i, j)} for i, j in bonds))
+    first, second = _columns(bonds, 2)
+    along = _unit(positions[second] - positions[first])
+    return _rows(positions, len(first), [(first, -along), (second, along)])
 
 
 def bends(positions: Floats, near: list[list[int]]) -> Floats:
     """(m, 3n) displacement vectors of all angles between bonds; a straight angle gives two."""
-    return _rows(positions, _bend_rows(positions, near))
+    triples = [(i, apex, j) for apex, ends in enumerate(near) for i, j in combinations(ends, 2)]
+    i, apex, j = _columns(triples, 3)
+    straight = (_unit(positions[i] - positions[apex]) * _unit(positions[j] - positions[apex])).sum(axis=1) < -_STRAIGHT
+    bent = ~straight
+    return np.vstack([
+        _bent(positions, i[bent], apex[bent], j[bent]),
+        _straight(positions, i[straight], apex[straight], j[straight]),
+    ])  # fmt: skip
 
 
 def out_of_plane_bends(positions: Floats, near: list[list[int]]) -> Floats:
     """(m, 3n) displacements of an atom out of the plane of its three bonds, where these are planar."""
-    return _rows(positions, _out_of_plane_rows(positions, near))
+    found = [_out_of_plane(positions, apex, ends) for apex, ends in enumerate(near) if len(ends) == 3]
+    return np.array([row for row in found if row is not None]).reshape(-1, positions.size)
 
 
 def torsions(positions: Floats, bonds: Bonds, near: list[list[int]]) -> Floats:
-    """(m, 3n) displacement vectors of the dihedral angles about every bond, added up for each bond."""
-    return _rows(positions, _torsion_rows(positions, bonds, near))
+    """(m, 3n) displacement vectors of the dihedral angles about every bond, added up for each bond.
+
+    Single dihedral angles about one bond differ from their sum by bends only.
+    """
+    ends = [(j, k, _off_axis(positions, near, j, k), _off_axis(positions, near, k, j)) for j, k in bonds]
+    turning = [one for one in ends if one[2] and one[3]]
+    levers = [(row, i, j, k, -len(after)) for row, (j, k, before, after) in enumerate(turning) for i in before]
+    levers += [(row, m, k, j, -len(before)) for row, (j, k, before, after) in enumerate(turning) for m in after]
+    return _turned(positions, len(turning), levers)
 
 
-Row = dict[int, Floats]
+def _columns(rows: Sequence[tuple[int, ...]], width: int) -> Integers:
+    return np.array(rows, dtype=np.int64).reshape(-1, width).T
 
 
-def _rows(positions: Floats, entries: Iterator[Row] | Sequence[Row]) -> Floats:
+def _unit(vectors: Floats) -> Floats:
+    return np.asarray(vectors / np.sqrt((vectors**2).sum(axis=-1, keepdims=True)))
+
+
+def _lengths(vectors: Floats) -> Floats:
+    return np.sqrt((vectors**2).sum(axis=-1, keepdims=True))
+
+
+def _rows(positions: Floats, count: int, parts: list[tuple[Integers, Floats]]) -> Floats:
+    """One row for each coordinate: `parts` are atoms (count,) with their displacements (count, 3)."""
+    rows = np.zeros((count, *positions.shape))
+    for atoms, vectors in parts:
+        np.add.at(rows, (np.arange(count), atoms), vectors)
+    return rows.reshape(count, positions.size)
+
+
+def _bent(positions: Floats, i: Integers, apex: Integers, j: Integers) -> Floats:
+    """Wilson, Decius and Cross (1955), equations 4-1 (5) and (6)."""
+    to_i, to_j = positions[i] - positions[apex], positions[j] - positions[apex]
+    first, second = _unit(to_i), _unit(to_j)
+    cosine = (first * second).sum(axis=1, keepdims=True)
+    sine = np.sqrt(np.clip(1 - cosine**2, 1e-12, None))
+    on_i = (cosine * first - second) / (sine * _lengths(to_i))
+    on_j = (cosine * second - first) / (sine * _lengths(to_j))
+    return _rows(positions, len(i), [(i, on_i), (j, on_j), (apex, -on_i - on_j)])
+
+
+def _straight(positions: Floats, i: Integers, apex: Integers, j: Integers) -> Floats:
+    """Two bends across each straight angle: one along a direction across the bonds, one across both."""
+    to_i, to_j = positions[i] - positions[apex], positions[j] - positions[apex]
+    line = _unit(to_i)
+    helper = np.eye(3)[np.abs(line).argmin(axis=1)]
+    across = _unit(np.cross(line, helper)) if len(line) else line
     rows = []
-    for entry in entries:
-        row = np.zeros(positions.shape)
-        for atom, vector in entry.items():
-            row[atom] += vector
-        rows.append(row.ravel())
-    return np.array(rows).reshape(-1, positions.size)
+    for direction in (across, np.cross(line, across)):
+        first, second = direction / _lengths(to_i), direction / _lengths(to_j)
+        rows.append(_rows(positions, len(i), [(i, first), (j, second), (apex, -first - second)]))
+    return np.vstack(rows)
 
 
-def _unit(positions: Floats, i: int, j: int) -> Floats:
-    vector = positions[j] - positions[i]
-    return np.asarray(vector / np.linalg.norm(vector))
-
-
-def _length(positions: Floats, i: int, j: int) -> float:
-    return float(np.linalg.norm(positions[j] - positions[i]))
-
-
-def _bend_rows(positions: Floats, near: list[list[int]]) -> Iterator[Row]:
-    for apex, ends in enumerate(near):
-        for i, j in combinations(ends, 2):
-            first, second = _unit(positions, apex, i), _unit(positions, apex, j)
-            if first @ second < -_STRAIGHT:
-                directions = _across(first)
-                yield from (_straight_row(positions, i, apex, j, direction) for direction in directions)
-            else:
-                yield _bend_row(positions, i, apex, j)
-
-
-def _across(direction: Floats) -> Floats:
-    _, _, rows = np.linalg.svd(direction[None])
-    return np.asarray(rows[1:])
-
-
-def _straight_row(positions: Floats, i: int, apex: int, j: int, direction: Floats) -> Row:
-    first, second = direction / _length(positions, apex, i), direction / _length(positions, apex, j)
-    return {i: first, j: second, apex: -first - second}
-
-
-def _bend_row(positions: Floats, i: int, apex: int, j: int) -> Row:
-    first, second = _unit(positions, apex, i), _unit(positions, apex, j)
-    cosine = float(first @ second)
-    sine = np.sqrt(max(1 - cosine**2, 1e-12))
-    on_i = (cosine * first - second) / (sine * _length(positions, apex, i))
-    on_j = (cosine * second - first) / (sine * _length(positions, apex, j))
-    return {i: on_i, j: on_j, apex: -on_i - on_j}
-
-
-def _out_of_plane_rows(positions: Floats, near: list[list[int]]) -> Iterator[Row]:
-    for apex, ends in enumerate(near):
-        if len(ends) != 3:
-            continue
-        units = np.array([_unit(positions, apex, end) for end in ends])
-        normal = np.cross(units[1] - units[0], units[2] - units[0])
-        if abs(np.linalg.det(units)) > _PLANAR or np.linalg.norm(normal) < 1e-6:
-            continue
-        yield _out_of_plane_row(positions, apex, ends, normal / np.linalg.norm(normal))
-
-
-def _out_of_plane_row(positions: Floats, apex: int, ends: list[int], normal: Floats) -> Row:
+def _out_of_plane(positions: Floats, apex: int, ends: list[int]) -> Floats | None:
     """The apex rises, the three ends sink by the weights that leave translation and rotation out."""
-    points = np.vstack([np.ones(3), (positions[ends] - positions[apex]).T])
+    arms = positions[ends] - positions[apex]
+    units = _unit(arms)
+    normal = np.cross(units[1] - units[0], units[2] - units[0])
+    size = float(np.sqrt(normal @ normal))
+    if abs(np.linalg.det(units)) > _PLANAR or size < 1e-6:
+        return None
+    points = np.vstack([np.ones(3), arms.T])
     weights = np.linalg.lstsq(points, np.array([1.0, 0.0, 0.0, 0.0]), rcond=None)[0]
-    return {apex: -normal} | {end: weight * normal for end, weight in zip(ends, weights, strict=True)}
+    row = np.zeros(positions.shape)
+    row[apex] = -normal / size
+    row[ends] += weights[:, None] * normal / size
+    return row.ravel()
 
 
-def _torsion_rows(positions: Floats, bonds: Bonds, near: list[list[int]]) -> Iterator[Row]:
-    """One for each bond: the sum of its dihedral angles, in which single ones differ by bends only."""
-    for j, k in bonds:
-        before = [i for i in near[j] if i != k and not _is_straight(positions, i, j, k)]
-        after = [m for m in near[k] if m != j and not _is_straight(positions, m, k, j)]
-        if before and after:
-            yield _torsion_row(positions, before, j, k, after)
+def _off_axis(positions: Floats, near: list[list[int]], apex: int, other: int) -> list[int]:
+    """Neighbours of an atom that do not lie on the line of one of its bonds."""
+    ends = [end for end in near[apex] if end != other]
+    if not ends:
+        return ends
+    cosines = _unit(positions[ends] - positions[apex]) @ _unit(positions[other] - positions[apex])
+    return [end for end, cosine in zip(ends, cosines, strict=True) if abs(cosine) <= _STRAIGHT]
 
 
-def _is_straight(positions: Floats, end: int, apex: int, other: int) -> bool:
-    return bool(abs(_unit(positions, apex, end) @ _unit(positions, apex, other)) > _STRAIGHT)
+def _turned(positions: Floats, count: int, levers: list[tuple[int, int, int, int, int]]) -> Floats:
+    """Wilson, Decius and Cross (1955), equations 4-1 (21) to (24), added up over the atoms on both ends of a bond.
 
-
-def _torsion_row(positions: Floats, before: list[int], j: int, k: int, after: list[int]) -> Row:
-    """Wilson, Decius and Cross (1955), equations 4-1 (21) to (24), added up over the atoms on both ends."""
-    axis = positions[k] - positions[j]
-    size = float(np.linalg.norm(axis))
-    row = {j: np.zeros(3), k: np.zeros(3)}
-    for i in before:
-        first = positions[j] - positions[i]
-        normal = np.cross(first, axis)
-        pull = -len(after) * size * normal / (normal @ normal)
-        _add(row, i, pull, j, k, float(first @ axis) / size**2)
-    for m in after:
-        last = positions[m] - positions[k]
-        normal = np.cross(axis, last)
-        pull = len(before) * size * normal / (normal @ normal)
-        _add(row, m, pull, k, j, float(last @ axis) / size**2)
-    return row
-
-
-def _add(row: Row, end: int, pull: Floats, apex: int, other: int, share: float) -> None:
-    """A force on an end atom, balanced on the two atoms of the bond."""
-    row[end] = row.get(end, np.zeros(3)) + pull
-    row[apex] = row[apex] - (1 + share) * pull
-    row[other] = row[other] + share * pull
+    levers  row, end, its neighbour in the bond, the other atom of the bond, and a signed weight.
+    """
+    row, end, apex, other, weight = _columns(levers, 5)
+    axis, arm = positions[other] - positions[apex], positions[apex] - positions[end]
+    normal = np.cross(arm, axis) if len(row) else arm
+    size = _lengths(axis)
+    pull = weight[:, None] * size * normal / (normal**2).sum(axis=1, keepdims=True)
+    share = (arm * axis).sum(axis=1, keepdims=True) / size**2
+    rows = np.zeros((count, *positions.shape))
+    for atoms, vectors in ((end, pull), (apex, -(1 + share) * pull), (other, share * pull)):
+        np.add.at(rows, (row, atoms), vectors)
+    return rows.reshape(count, positions.size)
