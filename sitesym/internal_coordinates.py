@@ -115,9 +115,9 @@ def _out_of_plane(positions: Floats, apex: int, ends: list[int]) -> Floats | Non
     """The apex rises, the three ends sink by the weights that leave translation and rotation out."""
     arms = positions[ends] - positions[apex]
     units = _unit(arms)
-    normal = np.cross(units[1] - units[0], units[2] - units[0])
+    normal = _cross(units[1] - units[0], units[2] - units[0])
     size = float(np.sqrt(normal @ normal))
-    if abs(np.linalg.det(units)) > _PLANAR or size < 1e-6:
+    if abs(units[0] @ _cross(units[1], units[2])) > _PLANAR or size < 1e-6:
         return None
     points = np.vstack([np.ones(3), arms.T])
     weights = np.linalg.lstsq(points, np.array([1.0, 0.0, 0.0, 0.0]), rcond=None)[0]
@@ -125,6 +125,12 @@ def _out_of_plane(positions: Floats, apex: int, ends: list[int]) -> Floats | Non
     row[apex] = -normal / size
     row[ends] += weights[:, None] * normal / size
     return row.ravel()
+
+
+def _cross(u: Floats, v: Floats) -> Floats:
+    """The cross product of two single vectors, without the overhead of arrays of them."""
+    (a, b, c), (d, e, f) = u.tolist(), v.tolist()
+    return np.array([b * f - c * e, c * d - a * f, a * e - b * d])
 
 
 def _off_axis(positions: Floats, near: list[list[int]], apex: int, other: int) -> list[int]:

@@ -12,6 +12,7 @@ evaluated on the operations of any subgroup, also for linear molecules.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -34,7 +35,7 @@ class Labelling:
     azimuth: float
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Representation:
     """One real irreducible representation, evaluated on a list of n operations.
 
@@ -52,7 +53,7 @@ class Representation:
         """1, 2, 3, 4 or 5."""
         return int(self.matrices.shape[1])
 
-    @property
+    @cached_property
     def characters(self) -> Floats:
         """(n,) traces."""
         return np.asarray(np.trace(self.matrices, axis1=1, axis2=2))

@@ -7,6 +7,7 @@ of two, by which every scalar product is divided.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from functools import lru_cache
 
 import numpy as np
 
@@ -35,9 +36,14 @@ def counts(values: Floats) -> Integers:
 
 def reduce_characters(species: Sequence[Representation], characters: Floats) -> Multiplicities:
     """How often each species occurs in a representation with these `characters` (n,), one for each operation."""
-    table = np.array([one.characters / one.norm for one in species])
-    found = counts(table @ characters / len(characters))
+    found = counts(_projectors(tuple(species)) @ characters / len(characters))
     return {one.label: int(count) for one, count in zip(species, found, strict=True) if count}
+
+
+@lru_cache(maxsize=1024)
+def _projectors(species: tuple[Representation, ...]) -> Floats:
+    """(species, operations) characters over norms."""
+    return np.array([one.characters / one.norm for one in species])
 
 
 def subduce(group: PointGroup, subgroup: PointGroup) -> dict[str, Multiplicities]:
