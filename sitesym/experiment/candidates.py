@@ -69,7 +69,7 @@ def candidates(
 
 
 def axes_of_face(normal: Direction, lattice: Floats) -> tuple[Direction, Direction]:
-    """Two perpendicular directions in a face: a Cartesian axis or else the simplest lattice direction, and its partner."""
+    """Two perpendicular directions in a face: a Cartesian axis, or else the simplest lattice direction, and another."""
     first = _first_in_plane(normal, lattice)
     return first, named(np.cross(normal.vector, first.vector), lattice) or turned(first, normal, 90)
 
@@ -103,14 +103,18 @@ def named(vector: Floats, lattice: Floats) -> Direction | None:
 
 
 def _beam(normal: Direction, lattice: Floats) -> Direction:
-    return named(normal.vector, lattice) or normal
+    return _simplest(normal, lattice)
+
+
+def _simplest(direction: Direction, lattice: Floats) -> Direction:
+    return named(direction.vector, lattice) or direction
 
 
 def _along_one_line(normal: Direction, mount: str, lattice: Floats, analyser: bool) -> Iterator[Candidate]:
     beam = _beam(normal, lattice)
     scattered = -beam if mount == "backscattering" else beam
     u, v = axes_of_face(normal, lattice)
-    plus, minus = turned(u, beam, 45), turned(u, beam, -45)
+    plus, minus = (_simplest(turned(u, beam, angle), lattice) for angle in (45, -45))
     base = 3 if mount == "forward" else 0
     natural = unpolarized(scattered)
     pairs = [(u, natural, 0), (v, natural, 0), (plus, natural, 2)]

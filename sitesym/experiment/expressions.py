@@ -34,15 +34,22 @@ def _square(weight: float, row: Complexes, letters: Sequence[str]) -> str:
     present = [(value, letter) for value, letter in zip(row, letters, strict=True) if abs(value) > _ZERO]
     if len(present) == 1:
         return _scaled(weight * abs(present[0][0]) ** 2, f"{present[0][1]}²")
-    inside, scale = _tidy([value for value, _ in present])
+    inside, scale = _tidy([value for value, _ in present], weight)
     words = _sum([(value, letter) for value, (_, letter) in zip(inside, present, strict=True)])
-    return _scaled(weight * scale**2, f"|{words}|²" if "i" in words else f"({words})²")
+    return _scaled(scale, f"|{words}|²" if "i" in words else f"({words})²")
 
 
-def _tidy(values: list[complex]) -> tuple[list[complex], float]:
-    """Scale so that the smallest coefficient has size one, which makes most of them whole numbers."""
+def _tidy(values: list[complex], weight: float) -> tuple[list[complex], float]:
+    """Coefficients and the factor before their square: whole numbers or roots where there are such, else a factor 1."""
     smallest = min(abs(value) for value in values)
-    return [value / smallest for value in values], smallest
+    scaled = [value / smallest for value in values]
+    if all(_is_simple(abs(part)) for value in scaled for part in (value.real, value.imag)):
+        return scaled, weight * smallest**2
+    return [value * np.sqrt(weight) for value in values], 1.0
+
+
+def _is_simple(value: float) -> bool:
+    return value < _ZERO or _simple(value) is not None
 
 
 def _sum(terms: list[tuple[complex, str]]) -> str:
@@ -61,14 +68,20 @@ def _sum(terms: list[tuple[complex, str]]) -> str:
 
 def _number(value: float) -> str:
     """A factor before a letter: nothing for 1, else a fraction, a root, or four figures."""
+    found = _simple(value)
+    return f"{value:.4g} " if found is None else found
+
+
+def _simple(value: float) -> str | None:
+    """A small fraction, perhaps with a root, as a factor before a letter; None for any other number."""
     if abs(value - 1) < 1e-9:
         return ""
     for root, symbol in ((1.0, ""), (2.0, "√2 "), (3.0, "√3 "), (6.0, "√6 ")):
         near = Fraction(value / np.sqrt(root)).limit_denominator(12)
         if near and abs(value / np.sqrt(root) - near) < 1e-9:
             fraction = f"{near.numerator}" if near.denominator == 1 else f"({near.numerator}/{near.denominator})"
-            return symbol if near == 1 else f"{fraction} {symbol}".rstrip() + (" " if not symbol else "")
-    return f"{value:.4g} "
+            return symbol if near == 1 else f"{fraction} {symbol}"
+    return None
 
 
 def _scaled(weight: float, square: str) -> str:

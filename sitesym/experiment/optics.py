@@ -59,8 +59,9 @@ def _note(analysis: Analysis, beam: Direction, light: Polarization) -> BeamNote 
     angle = float(np.arccos(cosine))
     fraction = float(np.sin(2 * angle) ** 2)
     words = (
-        f"light along {beam.name} polarized along {light.name} lies {np.degrees(angle):.0f}° off a principal direction: "
-        f"birefringence may turn up to {100 * fraction:.0f} % of it into the crossed polarization (thin samples less)"
+        f"light along {beam.name} polarized along {light.name} lies {np.degrees(angle):.0f}° off a principal "
+        f"direction: birefringence may turn up to {100 * fraction:.0f} % of it into the crossed polarization (thin "
+        "samples less)"
     )
     return BeamNote(beam.name, light.name, fraction, words)
 
@@ -102,7 +103,7 @@ def unique_axis(analysis: Analysis) -> Floats:
 
 
 def optical_activity(analysis: Analysis, geometry: Geometry) -> str:
-    """A sentence where symmetry allows the plane of polarization to turn along a beam that is not birefringent, else "".
+    """A sentence where symmetry lets the plane of polarization turn along a beam that is not birefringent, else "".
 
     The eleven classes without improper operations; across the optic axis birefringence hides the effect.
     """

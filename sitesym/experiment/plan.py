@@ -2,20 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass, replace
 
 from sitesym.analysis import Analysis
 from sitesym.errors import UsageError
 from sitesym.experiment.candidates import Candidate, candidates
 from sitesym.experiment.cover import Cover, Demand, demands_of, least_cover, meets
+from sitesym.experiment.faces import helpful_faces
 from sitesym.experiment.leakage import Leak, leaks
 from sitesym.experiment.optics import BeamNote, beam_notes, optical_activity
 from sitesym.experiment.shown import GeometryResult, raman_rows, what_it_shows
 from sitesym.geometry.notation import parse_geometry
 
-HELPFUL_FACES = ("001", "100", "010", "110", "1-10", "101", "011", "111", "120", "210")
-"""Tried in this order when the faces at hand leave something undecided."""
+_TURNED_AWAY = 0.01
+"""Share of the light that birefringence may turn before a measurement is not offered."""
+
+_UNKNOWN_OPTICS = 4
+"""Ease is this much worse where the directions of unchanged polarization must be found first."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -44,7 +48,7 @@ class FurtherFace:
 
 
 @dataclass(frozen=True, slots=True)
-class Bench:
+class Conditions:
     """The conditions to which figures refer: tilt in degrees, numerical aperture, refractive index of the crystal."""
 
     tilt: float = 2.0
@@ -54,12 +58,13 @@ class Bench:
 
 @dataclass(frozen=True, eq=False)
 class Plan:
-    """A plan for one crystal.
+    """A plan of polarized Raman measurements on one crystal.
 
     faces, mounts  what the sample offers; analyser whether the scattered light is analysed.
-    asked          geometries that the user named, with what they show.
-    candidates     all measurements that the faces allow, with what they show, in one order.
-    cover          the least set among them: indices of candidates, demands met and not met.
+    asked          geometries that the user named.
+    candidates     all measurements that the faces allow, in one order, `results` what they show; without faces those
+                   that the user named.
+    cover          the least set among the candidates: their indices, demands met and not met.
     measurements   the chosen ones in full.
     further        a face that would help, or None.
     """
@@ -68,13 +73,13 @@ class Plan:
     faces: tuple[str, ...]
     mounts: tuple[str, ...]
     analyser: bool
-    asked: tuple[GeometryResult, ...]
+    asked: tuple[Measurement, ...]
     candidates: tuple[Candidate, ...]
     results: tuple[GeometryResult, ...]
     cover: Cover
     measurements: tuple[Measurement, ...]
     further: FurtherFace | None
-    bench: Bench
+    conditions: Conditions
 
     def __repr__(self) -> str:
         chosen = ", ".join(one.result.geometry.notation for one in self.measurements)
@@ -82,18 +87,31 @@ class Plan:
 
     @property
     def separated(self) -> tuple[tuple[str, str], ...]:
-        """Pairs of species that the plan tells apart."""
-        return tuple((demand.first, demand.second) for demand in self.cover.met if demand.second)
+        """Pairs that the plan tells apart: of species in all their phonons, and LO from TO of one species."""
+        met, unmet = _pairs(self.cover.met), _pairs(self.cover.unmet)
+        left = {_labels(pair) for pair in unmet}
+        across = dict.fromkeys(labels for pair in met if len(set(labels := _labels(pair))) == 2 and labels not in left)
+        return (*across, *(pair for pair in met if len(set(_labels(pair))) == 1))
 
     @property
     def inseparable(self) -> tuple[tuple[str, str], ...]:
-        """Pairs that no measurement on these faces tells apart by presence and absence."""
-        return tuple((demand.first, demand.second) for demand in self.cover.unmet if demand.second)
+        """Pairs that no measurement offered tells apart: of species, or of some of their phonons."""
+        told = {_labels(pair) for pair in _pairs(self.cover.met)}
+        unmet = _pairs(self.cover.unmet)
+        return tuple(dict.fromkeys(pair if _labels(pair) in told else _labels(pair) for pair in unmet))
 
     @property
     def unseen(self) -> tuple[str, ...]:
-        """Raman-active species that no measurement on these faces shows."""
+        """Raman-active species that no measurement offered shows."""
         return tuple(demand.first for demand in self.cover.unmet if not demand.second)
+
+
+def _pairs(demands: Iterable[Demand]) -> list[tuple[str, str]]:
+    return [(demand.first, demand.second) for demand in demands if demand.second]
+
+
+def _labels(pair: tuple[str, str]) -> tuple[str, str]:
+    return pair[0].partition("(")[0], pair[1].partition("(")[0]
 
 
 def make_plan(
@@ -103,43 +121,68 @@ def make_plan(
     mounts: Sequence[str] = ("backscattering",),
     analyser: bool = True,
     geometries: Sequence[str] = (),
-    bench: Bench | None = None,
+    conditions: Conditions | None = None,
+    thin: bool = False,
 ) -> Plan:
     """Plan polarized Raman measurements.
 
-    faces       indices of the faces that the sample has, such as "001" or "10-10"; none for powders.
+    faces       indices of the faces that the sample has, such as "001" or "10-10". Without any, the least plan is made
+                of `geometries` alone.
     mounts      "backscattering", "right-angle", "forward".
     geometries  geometries to judge as they stand, in typed notation, such as "z(xy)-z".
+    thin        the sample is too thin for birefringence to matter. Otherwise measurements whose polarization it would
+                turn are not offered.
 
-    Raises UsageError for faces, mounts or geometries that cannot be.
+    Raises UsageError for faces, mounts or geometries that cannot be, and for crystals without Raman-active modes.
     """
-    lattice = analysis.symmetry.lattice
-    conditions = bench or Bench()
     if not raman_rows(analysis):
         raise UsageError(
             "This crystal has no Raman-active optic mode at the zone centre.",
             "Plan an infrared measurement, or look at `sitesym report`.",
         )
-    asked = tuple(what_it_shows(analysis, parse_geometry(text, lattice)) for text in geometries)
-    offered = candidates(lattice, faces, mounts, analyser=analyser) if faces else ()
+    lattice, setup = analysis.symmetry.lattice, conditions or Conditions()
+    named = [Candidate(parse_geometry(text, lattice), (), "as named", 0) for text in geometries]
+    offered = [
+        one
+        for candidate in (candidates(lattice, faces, mounts, analyser=analyser) if faces else named)
+        if (one := _usable(analysis, candidate, thin or not faces)) is not None
+    ]
     results = tuple(what_it_shows(analysis, one.geometry) for one in offered)
     cover = least_cover(offered, results)
-    chosen = tuple(_measurement(analysis, offered[k], results[k], cover, conditions) for k in cover.chosen)
-    further = _further(analysis, results, cover, faces) if faces else None
     return Plan(
-        analysis, tuple(faces), tuple(mounts), analyser, asked, offered, results, cover, chosen, further, conditions
+        analysis,
+        tuple(faces),
+        tuple(mounts),
+        analyser,
+        tuple(_measurement(analysis, one, what_it_shows(analysis, one.geometry), cover, setup) for one in named),
+        tuple(offered),
+        results,
+        cover,
+        tuple(_measurement(analysis, offered[k], results[k], cover, setup) for k in cover.chosen),
+        _further(analysis, results, cover, faces) if faces else None,
+        setup,
     )
 
 
+def _usable(analysis: Analysis, candidate: Candidate, as_it_is: bool) -> Candidate | None:
+    """The candidate, less easy where the crystal's optics are not known; None where it would turn the polarization."""
+    if as_it_is:
+        return candidate
+    notes = beam_notes(analysis, candidate.geometry)
+    if any(note.fraction is not None and note.fraction > _TURNED_AWAY for note in notes):
+        return None
+    return replace(candidate, ease=candidate.ease + _UNKNOWN_OPTICS) if notes else candidate
+
+
 def _measurement(
-    analysis: Analysis, candidate: Candidate, result: GeometryResult, cover: Cover, bench: Bench
+    analysis: Analysis, candidate: Candidate, result: GeometryResult, cover: Cover, setup: Conditions
 ) -> Measurement:
     geometry = candidate.geometry
     return Measurement(
         candidate,
         result,
         tuple(demand for demand in cover.met if meets(result, demand)),
-        leaks(analysis, geometry, tilt=bench.tilt, aperture=bench.aperture, index=bench.index),
+        leaks(analysis, geometry, tilt=setup.tilt, aperture=setup.aperture, index=setup.index),
         beam_notes(analysis, geometry),
         optical_activity(analysis, geometry),
     )
@@ -148,14 +191,11 @@ def _measurement(
 def _further(
     analysis: Analysis, results: Sequence[GeometryResult], cover: Cover, faces: Sequence[str]
 ) -> FurtherFace | None:
-    """The first of the helpful faces that, added to those at hand, meets most of what is left."""
+    """The first of the helpful faces that, added to those at hand, meets most of what they leave."""
     best: FurtherFace | None = None
-    for face in HELPFUL_FACES:
-        if face in faces:
-            continue
-        more = [
-            what_it_shows(analysis, one.geometry) for one in candidates(analysis.symmetry.lattice, [face])
-        ]
+    for face in helpful_faces(analysis, faces):
+        offered = (_usable(analysis, one, False) for one in candidates(analysis.symmetry.lattice, [face]))
+        more = [what_it_shows(analysis, one.geometry) for one in offered if one is not None]
         wanted = [demand for demand in demands_of([*results, *more]) if demand not in cover.met]
         met = tuple(demand for demand in wanted if any(meets(result, demand) for result in more))
         if met and (best is None or len(met) > len(best.meets)):

@@ -1,8 +1,10 @@
 """Scattering geometries ki(ei es)ks after Damen, Porto and Tell (Phys. Rev. 142, 570, 1966).
 
-Directions are those of travelling light inside the crystal. In typed input `-z` stands for z̄, a bracketed direction
-may take a letter's place, and a polarization may also be `R` or `L` (circular, seen against the beam) or `*`
-(unpolarized light, or no analyser): `z(xy)-z`, `[001]([110][1-10])[00-1]`, `x(z*)y`.
+Directions are those of travelling light inside the crystal. In typed input `-z` stands for z̄, and a bracketed direction
+[uvw] or the normal of a face (hkl) may take a letter's place. A polarization may be turned about the incident beam, or
+about its own where that travels along another line, by degrees: `x+30°`. It may also be `R` or `L` (circular, seen
+against the beam) or `*` (unpolarized light, or no analyser): `z(xy)-z`, `[001]([110][1-10])[00-1]`, `x(z*)y`,
+`z(x+30° x+120°)-z`.
 """
 
 from __future__ import annotations
@@ -13,14 +15,17 @@ from dataclasses import dataclass
 import numpy as np
 
 from sitesym.errors import UsageError
-from sitesym.geometry.directions import Direction, parse_direction
+from sitesym.geometry.directions import Direction, parse_direction, turned
 from sitesym.groups.operation import Floats
 
 Complexes = np.typing.NDArray[np.complex128]
-_WORD = r"-?(?:\[[^\]]*\]|[xyz])"
-_POLARIZATION = rf"(?:{_WORD}|[RL*])"
+_WORD = r"-?(?:\[[^\]]*\]|\([-+\d\s,]+\)|[xyz])"
+_ANGLE = r"[-+]\d+(?:\.\d+)?°?"
+_POLARIZATION = rf"(?:{_WORD}(?:{_ANGLE})?|[RL*])"
+_TURNED = re.compile(rf"({_WORD})({_ANGLE})")
 _NOTATION = re.compile(rf"\s*({_WORD})\s*\(\s*({_POLARIZATION})\s*({_POLARIZATION})\s*\)\s*({_WORD})\s*")
 _TRANSVERSE = 1e-3
+_SAME_LINE = 1e-9
 
 
 @dataclass(frozen=True, eq=False)
@@ -105,21 +110,25 @@ def parse_geometry(text: str, lattice: Floats) -> Geometry:
             f"'{text}' is no scattering geometry.", "Write ki(ei es)ks, such as z(xy)-z or [001]([110][1-10])[00-1]."
         )
     incident, scattered = (parse_direction(found[k], lattice) for k in (1, 4))
-    incoming = _polarization(found[2], incident, lattice)
-    outgoing = _polarization(found[3], scattered, lattice)
+    one_line = bool(abs(incident.vector @ scattered.vector) > 1 - _SAME_LINE)
+    incoming = _polarization(found[2], incident, incident, lattice)
+    outgoing = _polarization(found[3], scattered, incident if one_line else scattered, lattice)
     return Geometry(incident, incoming, outgoing, scattered)
 
 
-def _polarization(word: str, beam: Direction, lattice: Floats) -> Polarization:
+def _polarization(word: str, beam: Direction, axis: Direction, lattice: Floats) -> Polarization:
     if word == "*":
         return unpolarized(beam)
     if word in ("R", "L"):
         return circular(word, beam)
-    direction = parse_direction(word, lattice)
+    with_angle = _TURNED.fullmatch(word)
+    direction = parse_direction(with_angle[1] if with_angle else word, lattice)
     if abs(direction.vector @ beam.vector) > _TRANSVERSE:
         angle = np.degrees(np.arccos(min(1.0, abs(float(direction.vector @ beam.vector)))))
         raise UsageError(
             f"Light along {beam.name} cannot be polarized along {direction.name}: they enclose {angle:.1f}°, not 90°.",
             "Choose a polarization across the beam; in oblique crystals [uvw] and (uvw) differ.",
         )
+    if with_angle:
+        direction = turned(direction, axis, float(with_angle[2].removesuffix("°")))
     return linear(direction)
