@@ -25,6 +25,10 @@ _NEARLY_REDUNDANT = (1e-3, 0.1)
 """Singular values below count as zero, those above as independent, relative to the largest coordinate vector."""
 
 
+_NOTHING = 1e-8
+"""1/Å. Coordinates whose vectors are all shorter than this are zero but for rounding (torsions in a ring of three)."""
+
+
 @dataclass(frozen=True, slots=True)
 class FreeVibrations:
     """Species of a free molecule's motions.
@@ -133,11 +137,12 @@ def _new_directions(basis: Floats, rows: Floats) -> Floats:
     Coordinates that are redundant but for a small distortion (angles round a nearly planar atom) span next to nothing
     new; the cut is made at the widest gap of the singular values, so that it never parts a symmetric set of them.
     """
-    if not len(rows):
-        return rows
+    largest = float(np.linalg.norm(rows, axis=1).max(initial=0.0))
+    if largest < _NOTHING:
+        return rows[:0]
     rest = rows - (rows @ basis.T) @ basis
     squares, vectors = np.linalg.eigh(rest.T @ rest)
-    sizes = np.sqrt(np.clip(squares, 0, None)) / np.linalg.norm(rows, axis=1).max()
+    sizes = np.sqrt(np.clip(squares, 0, None)) / largest
     fresh = vectors[:, sizes > _cut(sizes)]
     fresh = fresh - basis.T @ (basis @ fresh)
     return np.asarray(np.linalg.qr(fresh)[0].T)
