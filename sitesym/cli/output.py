@@ -15,7 +15,8 @@ def check_output(arguments: argparse.Namespace) -> None:
     target = arguments.output
     if not target or not os.path.exists(target):
         return
-    if os.path.exists(arguments.file) and os.path.samefile(arguments.file, target):
+    sources = (arguments.file, getattr(arguments, "second", None))
+    if any(source and os.path.exists(source) and os.path.samefile(source, target) for source in sources):
         raise UsageError(f"The output '{target}' is the structure file itself.", "Choose another name for --output.")
     if not arguments.force:
         raise UsageError(f"The file '{target}' exists.", "Choose another name, or add --force to overwrite it.")
