@@ -12,12 +12,13 @@ from sitesym.groups.point_group import PointGroup
 from sitesym.groups.subduction import Multiplicities, reduce_characters, subtracted
 from sitesym.molecular import MolecularAnalysis, analyse_molecules
 from sitesym.selection import Activity, activities, vector_species
-from sitesym.structure import OpenQuestion, Structure
+from sitesym.structure import OpenQuestion, Structure, reduced
 from sitesym.symmetry.axes import SettingLabels, describe_axes, orthorhombic_labels
 from sitesym.symmetry.crystal import DEFAULT_TOLERANCE, CrystalSymmetry, Orbit, find_symmetry
 from sitesym.symmetry.scan import Scan, scan_tolerance
 from sitesym.symmetry.site_symbol import oriented_symbol
 from sitesym.tensors import TensorSpecies, tensor_species
+from sitesym.units import customary
 from sitesym.wavenumbers import Wavenumbers
 
 
@@ -113,7 +114,7 @@ class Analysis:
     def __repr__(self) -> str:
         totals = self.totals
         return (
-            f"Analysis({self.structure.formula}, {self.space_group}, {self.factor_group.schoenflies}: "
+            f"Analysis({self.formula}, {self.space_group}, {self.factor_group.schoenflies}: "
             f"{totals.infrared} infrared, {totals.raman} Raman, {totals.silent} silent)"
         )
 
@@ -121,6 +122,11 @@ class Analysis:
         from sitesym.views.notebook import summary_html
 
         return summary_html(self)
+
+    @cached_property
+    def formula(self) -> str:
+        """Empirical formula as chemists write it: CaCO3, K2PtCl6; in Hill order for organic compounds."""
+        return customary(reduced(self.structure.composition))
 
     @property
     def space_group(self) -> str:

@@ -19,6 +19,9 @@ from sitesym.errors import NotAStructureError
 Floats = npt.NDArray[np.float64]
 Integers = npt.NDArray[np.int64]
 
+_ROUNDING = 2e-3
+"""Relative error of amounts that come from occupancies written with three or four decimals."""
+
 FULL = 0.999
 """An occupancy from here on counts as full: files round thirds and sixths to three or four decimals."""
 
@@ -176,12 +179,20 @@ def _frozen(values: npt.ArrayLike, shape: tuple[int, ...], what: str) -> Floats:
 
 def hill_formula(composition: dict[str, float]) -> str:
     """Empirical formula in Hill order (Hill 1900, J. Am. Chem. Soc. 22, 478), divided by the common divisor."""
-    amounts = {element: amount for element, amount in composition.items() if amount > 0}
-    whole = [round(amount) for amount in amounts.values()]
-    if all(abs(amount - near) < 1e-6 for amount, near in zip(amounts.values(), whole, strict=True)):
-        divisor = gcd(*whole) if whole else 1
-        amounts = {element: amount / divisor for element, amount in amounts.items()}
+    amounts = reduced(composition)
     return "".join(f"{element}{_amount(amounts[element])}" for element in _hill_order(amounts))
+
+
+def reduced(composition: dict[str, float]) -> dict[str, float]:
+    """Amounts divided by the common divisor of those that are whole, to within what occupancies are rounded to."""
+    amounts = {element: amount for element, amount in composition.items() if amount > 0}
+    whole = {
+        element: round(amount)
+        for element, amount in amounts.items()
+        if round(amount) and abs(amount - round(amount)) < _ROUNDING * amount
+    }
+    divisor = gcd(*whole.values()) if whole else 1
+    return {element: whole.get(element, amount) / divisor for element, amount in amounts.items()}
 
 
 def _hill_order(elements: Sequence[str] | dict[str, float]) -> list[str]:

@@ -52,7 +52,7 @@ def test_text_is_the_default(capsys: pytest.CaptureFixture[str]) -> None:
 
 @pytest.mark.parametrize(
     ("form", "start"),
-    [("text", "CCaO₃"), ("json", "{"), ("csv", "species,"), ("markdown", "# "), ("latex", "%"), ("html", "<!")],
+    [("text", "CaCO₃"), ("json", "{"), ("csv", "species,"), ("markdown", "# "), ("latex", "%"), ("html", "<!")],
 )
 def test_every_format_is_printed_and_written(
     form: str, start: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]

@@ -64,7 +64,7 @@ class Explanation:
 
     def __repr__(self) -> str:
         left = sum(not one.is_allowed for one in self.bands)
-        return f"Explanation({self.analysis.structure.formula}: {len(self.bands)} bands, {left} without a place)"
+        return f"Explanation({self.analysis.formula}: {len(self.bands)} bands, {left} without a place)"
 
 
 def explain(

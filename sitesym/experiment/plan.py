@@ -83,7 +83,7 @@ class Plan:
 
     def __repr__(self) -> str:
         chosen = ", ".join(one.result.geometry.notation for one in self.measurements)
-        return f"Plan({self.analysis.structure.formula}: {chosen or 'no measurement'})"
+        return f"Plan({self.analysis.formula}: {chosen or 'no measurement'})"
 
     @property
     def separated(self) -> tuple[tuple[str, str], ...]:

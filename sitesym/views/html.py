@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING, Any
 
 from sitesym.version import __version__
 from sitesym.views import sentences
+from sitesym.views.html_molecules import molecules_part, origins_part
 from sitesym.views.labels import HTML, decomposition, printable
 from sitesym.views.method import paragraphs, references
 from sitesym.views.tables import site_table, tensor_groups
@@ -50,7 +51,8 @@ def page(analysis: Analysis) -> str:
     return _environment().get_template("page.html").render(
         parts=shown,
         structure=structure,
-        title=f"{structure.formula}, {sentences.space_group_words(analysis)}",
+        title=f"{analysis.formula}, {sentences.space_group_words(analysis)}",
+        compound=analysis.formula,
         space_group=analysis.space_group,
         factor_group=analysis.factor_group.schoenflies,
         serious=sentences.serious_cautions(analysis),
@@ -145,6 +147,7 @@ def _species(analysis: Analysis) -> Values:
         "all": sum(row.total for row in analysis.species),
         "acoustic": sum(row.acoustic for row in analysis.species),
         "totals": analysis.totals,
+        "origins": origins_part(analysis),
         "notes": [_ready(note) for note in sentences.notes(analysis, HTML) if note != exclusion],
     }
 
@@ -188,6 +191,7 @@ PARTS = (
     Part("answer", "Answer", _answer),
     Part("cell", "Crystal", _cell),
     Part("species", "Species", _species),
+    Part("molecules", "Molecules and ions", molecules_part),
     Part("tensors", "Raman tensors", _tensors),
     Part("sites", "Sites", _sites),
     Part("tolerance", "Tolerance", _tolerance),

@@ -48,7 +48,7 @@ def _list(title: str, items: Iterable[str], kind: str = "itemize") -> list[str]:
 
 
 def _crystal(analysis: Analysis) -> str:
-    names = filter(None, (LATEX.formula(analysis.structure.formula), _plain(analysis.structure.name)))
+    names = filter(None, (LATEX.formula(analysis.formula), _plain(analysis.structure.name)))
     return f"{' '.join(names)}, {sentences.space_group_words(analysis, LATEX)}"
 
 

@@ -38,7 +38,7 @@ def render(analysis: Analysis) -> str:
 
 def _answer(analysis: Analysis) -> list[str]:
     structure = analysis.structure
-    title = " ".join(filter(None, (MARKDOWN.formula(structure.formula), _plain(structure.name))))
+    title = " ".join(filter(None, (MARKDOWN.formula(analysis.formula), _plain(structure.name))))
     fields = (
         ("File", " ".join(filter(None, (structure.source, f"({structure.format})" if structure.format else "")))),
         ("Axes", analysis.axes),

@@ -22,7 +22,7 @@ _RULE = 'style="border-top:1px solid;border-bottom:1px solid"'
 def summary_html(analysis: Analysis) -> str:
     """Crystal, groups, counts, cautions and species; safe to insert whatever the file says."""
     structure = analysis.structure
-    title = " ".join(filter(None, (HTML.formula(structure.formula), HTML.plain(structure.name))))
+    title = " ".join(filter(None, (HTML.formula(analysis.formula), HTML.plain(structure.name))))
     groups = (
         f"{sentences.space_group_words(analysis, HTML)}, factor group {sentences.factor_group_words(analysis, HTML)}"
     )

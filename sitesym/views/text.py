@@ -82,7 +82,7 @@ def _all_cautions(analysis: Analysis) -> list[str]:
 
 def _title(analysis: Analysis) -> list[str]:
     structure = analysis.structure
-    title = clip("   ".join(filter(None, (TEXT.formula(structure.formula), printable(structure.name)))), WIDTH)
+    title = clip("   ".join(filter(None, (TEXT.formula(analysis.formula), printable(structure.name)))), WIDTH)
     return [title]
 
 

@@ -161,7 +161,7 @@ def _tripod(box: tuple[float, float, float, float]) -> str:
 
 
 def _title(analysis: Analysis) -> str:
-    return f"The cell of {analysis.structure.formula}"
+    return f"The cell of {analysis.formula}"
 
 
 def _description(analysis: Analysis, contents: Contents) -> str:
