@@ -12,6 +12,9 @@ from sitesym.bands.reasons import Reason
 _SITE_REACH, _FIELD_REACH = 110.0, 45.0
 """cm⁻¹ over which the score of a splitting halves: sites split by up to a hundred, units couple by some tens."""
 
+_BY_COUNT = 0.62
+"""Weight of a place that is had by count alone, with no wavenumber to compare."""
+
 _WORDS = {"raman": "Raman", "infrared": "infrared"}
 
 
@@ -26,11 +29,11 @@ def reasons_of_place(placed: Placed, siblings: Sequence[Band]) -> list[Reason]:
             f"allowed as one of {family.capacity(technique)} {family.vibration} of the {family.unit} that "
             f"{_WORDS[technique]} can show; symmetry fixes no wavenumbers"
         )
-        return [Reason("fundamental", _fit(placed), argument, (), labels, "polarized spectra tell the species")]
+        score = _BY_COUNT * _fit(placed)
+        return [Reason("fundamental", score, argument, (), labels, "polarized spectra tell the species")]
     if len(siblings) == 1 or band == _first(family, siblings):
         return [_single(placed, family, labels)]
-    apart = abs(band.wavenumber - _first(family, siblings).wavenumber)
-    return _split(placed, family, labels, len(siblings), apart)
+    return _split(placed, family, labels, siblings)
 
 
 def _fit(placed: Placed) -> float:
@@ -39,7 +42,9 @@ def _fit(placed: Placed) -> float:
 
 
 def _first(family: Family, siblings: Sequence[Band]) -> Band:
-    """The band that keeps the name of the fundamental: the one nearest to the expected wavenumber."""
+    """The band that keeps the name of the fundamental: the strongest, else the one nearest to its place."""
+    if all(band.intensity for band in siblings):
+        return max(siblings, key=lambda band: (band.intensity or 0.0, -band.wavenumber))
     centre = family.wavenumber or sum(band.wavenumber for band in siblings) / len(siblings)
     return min(siblings, key=lambda band: (abs(band.wavenumber - centre), band.wavenumber))
 
@@ -57,8 +62,9 @@ def _single(placed: Placed, family: Family, labels: tuple[str, ...]) -> Reason:
     return Reason("site_activation", _fit(placed), argument, (), labels, "compare with the salt in solution")
 
 
-def _split(placed: Placed, family: Family, labels: tuple[str, ...], seen: int, apart: float) -> list[Reason]:
-    technique = placed.band.technique
+def _split(placed: Placed, family: Family, labels: tuple[str, ...], siblings: Sequence[Band]) -> list[Reason]:
+    technique, seen, first = placed.band.technique, len(siblings), _first(family, siblings)
+    apart, likeness = abs(placed.band.wavenumber - first.wavenumber), _likeness(placed.band, first)
     site, crystal = family.site_bands(technique), family.capacity(technique)
     reasons = []
     if site > 1:
@@ -67,7 +73,7 @@ def _split(placed: Placed, family: Family, labels: tuple[str, ...], seen: int, a
             f"into {site} bands in {_WORDS[technique]}, {seen} are seen"
         )
         test = "isotopic dilution leaves site splitting and removes correlation-field splitting"
-        score = _fit(placed) / (1 + (apart / _SITE_REACH) ** 2)
+        score = likeness * _fit(placed) / (1 + (apart / _SITE_REACH) ** 2)
         reasons.append(Reason("site_splitting", score, argument, (), labels, test))
     if crystal > site:
         argument = (
@@ -76,9 +82,15 @@ def _split(placed: Placed, family: Family, labels: tuple[str, ...], seen: int, a
         )
         test = "isotopic dilution removes correlation-field splitting; polarized spectra tell the components"
         share = 0.9 if site <= 1 or seen > site else 0.55
-        score = share * _fit(placed) / (1 + (apart / _FIELD_REACH) ** 2)
+        score = likeness * share * _fit(placed) / (1 + (apart / _FIELD_REACH) ** 2)
         reasons.append(Reason("correlation_splitting", score, argument, (), labels, test))
     if not reasons:
         reasons.append(_single(placed, family, labels))
     return reasons
 
+
+def _likeness(band: Band, first: Band) -> float:
+    """Components of one vibration have comparable strength: close to 1, less for a band far weaker than the first."""
+    if not band.intensity or not first.intensity:
+        return 1.0
+    return 1 / (1 + 0.09 * first.intensity / band.intensity)

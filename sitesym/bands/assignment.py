@@ -61,7 +61,7 @@ def _assign_one(
     if not bands:
         return []
     base = np.array([[_cost(band, family, technique, pinned, forbidden) for family in families] for band in bands])
-    base = base.reshape(len(bands), len(families))
+    base = base.reshape(len(bands), len(families)) + np.array([[_weakness(band, bands)] for band in bands])
     slots = [(k, n) for k, family in enumerate(families) for n in range(min(family.capacity(technique), len(bands)))]
     columns = [base[:, k] + _FURTHER * n * families[k].is_internal for k, n in slots]
     stay = np.full((len(bands), len(bands)), _IMPOSSIBLE)
@@ -109,6 +109,14 @@ def _shift_cost(shift: float, wavenumber: float) -> float:
     if wavenumber > 2500:
         return float(0.5 * ((shift + 200) / 300) ** 2)
     return float(0.5 * (shift / (12 + 0.012 * wavenumber)) ** 2)
+
+
+def _weakness(band: Band, bands: Sequence[Band]) -> float:
+    """Weak bands come second: a little for every factor of ten below the strongest, where intensities are stated."""
+    strongest = max((other.intensity or 0.0 for other in bands), default=0.0)
+    if not band.intensity or not strongest:
+        return 0.0
+    return min(1.5, 0.6 * float(np.log10(strongest / band.intensity)))
 
 
 def _is(band: Band, wavenumber: float) -> bool:

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 from importlib.resources import files
+from math import exp, log
 
 from sitesym.analysis import Analysis
 from sitesym.bands.assignment import Placed
@@ -42,35 +43,46 @@ def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
             if band.technique == RAMAN
             else "it appears at oblique incidence in p polarization, or in reflectance, not in a thin film at normal incidence"
         )
-        score = 0.42 * (1 - ratio / _LONGITUDINAL_REACH) + 0.05
+        strong = 1.25 if band.intensity and one.band.intensity and band.intensity > 0.3 * one.band.intensity else 1.0
+        score = strong * (0.42 * (1 - ratio / _LONGITUDINAL_REACH) + 0.05)
         reasons.append(
             Reason("longitudinal_companion", score, argument, (one.band.wavenumber,), tuple(polar), test)
         )
     return reasons
 
 
-def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family]) -> list[Reason]:
-    """Species that the stated geometry forbids but misalignment lets through."""
+def shown_species(analysis: Analysis, band: Band) -> frozenset[str] | None:
+    """Species that the stated geometry shows; None where none is stated or it cannot be read."""
     if not band.geometry or band.technique != RAMAN:
-        return []
+        return None
     try:
         geometry = parse_geometry(band.geometry, analysis.symmetry.lattice)
     except UsageError:
+        return None
+    return frozenset(one.label for one in what_it_shows(analysis, geometry).allowed)
+
+
+def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family], own: Family | None) -> list[Reason]:
+    """Families of which the stated geometry forbids every component, but misalignment lets some through.
+
+    own  the family that the band was given to, for which the argument is the strongest.
+    """
+    shown = shown_species(analysis, band)
+    if shown is None:
         return []
-    shown = {one.label for one in what_it_shows(analysis, geometry).allowed}
     reasons = []
     for family in families:
         low, high = family.window
-        hidden = [part.label for part in family.active(RAMAN) if part.label not in shown]
-        if not hidden or not low <= band.wavenumber <= high:
+        labels = [part.label for part in family.active(RAMAN)]
+        if not labels or shown & set(labels) or not low <= band.wavenumber <= high:
             continue
         argument = (
-            f"{', '.join(hidden)} of {family.name} is forbidden in {band.geometry}; tilt, aperture or birefringence may "
+            f"{', '.join(labels)} of {family.name} is forbidden in {band.geometry}; tilt, aperture or birefringence may "
             "let some of it through"
         )
-        score = 0.5 if family.is_internal and family.wavenumber else 0.25
+        score = 0.85 if family is own else 0.5 if family.wavenumber else 0.25
         test = "turn the crystal by 90° or close the aperture: leakage changes, allowed bands stay"
-        reasons.append(Reason("leakage", score, argument, (), tuple(hidden), test))
+        reasons.append(Reason("leakage", score, argument, (), tuple(labels), test))
     return reasons
 
 
@@ -130,4 +142,6 @@ def _satellite(band: Band, main: Band, family: Family, isotope: Isotope) -> list
     )
     test = f"its intensity against {main.wavenumber:g} cm⁻¹ is the abundance; enriched material settles it"
     score = 0.3 + 0.6 * min(share, 0.3)
+    if band.intensity and main.intensity:
+        score = 0.2 + 0.62 * exp(-(log(band.intensity / (share * main.intensity)) ** 2))
     return [Reason("isotopologue", score, argument, (main.wavenumber,), (), test)]

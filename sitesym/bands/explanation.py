@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from sitesym.analysis import Analysis
 from sitesym.bands.allowed import reasons_of_place
 from sitesym.bands.assignment import Placed, assign
 from sitesym.bands.coincidence import Coincidences, coincidences
-from sitesym.bands.companions import isotope_reasons, leakage_reasons, longitudinal_reasons
+from sitesym.bands.companions import isotope_reasons, leakage_reasons, longitudinal_reasons, shown_species
 from sitesym.bands.inventory import Family, inventory
 from sitesym.bands.levels import level_reasons, parents_of, resonance_reasons
 from sitesym.bands.lowering import Lowering, lowerings
@@ -104,7 +104,7 @@ def _reasons(
     parents = parents_of(others)
     found = [
         *resonance_reasons(analysis, band, others, parents),
-        *leakage_reasons(analysis, band, families),
+        *leakage_reasons(analysis, band, families, one.family),
         *room_reasons(band),
         *phase_reasons(band, suspects),
         *longitudinal_reasons(band, others),
@@ -114,7 +114,7 @@ def _reasons(
         mine = [
             other.band for other in placed if other.family is one.family and other.band.technique == band.technique
         ]
-        return ranked([*reasons_of_place(one, mine), *found])
+        return ranked([*_of_place(analysis, one, mine), *found])
     found += [
         *level_reasons(analysis, band, parents),
         *disorder_reasons(analysis, band, families),
@@ -122,3 +122,16 @@ def _reasons(
         unexplained(band),
     ]
     return ranked(found)
+
+
+def _of_place(analysis: Analysis, one: Placed, mine: Sequence[Band]) -> list[Reason]:
+    """Reasons of the band's own place, and of other places that cost little more; less where polarization is against it."""
+    found = reasons_of_place(one, mine)
+    for other in one.alternatives:
+        moved = replace(one, family=other, cost=one.cost + 1.0)
+        found += [replace(reason, score=0.6 * reason.score) for reason in reasons_of_place(moved, [one.band])]
+    shown = shown_species(analysis, one.band)
+    return [
+        reason if shown is None or shown & set(reason.species) else replace(reason, score=0.3 * reason.score)
+        for reason in found
+    ]

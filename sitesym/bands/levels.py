@@ -11,6 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 from itertools import combinations_with_replacement
+from math import exp
 
 from sitesym.analysis import Analysis
 from sitesym.bands.assignment import Placed
@@ -158,9 +159,16 @@ def _resonances(
             f"{', '.join(sorted(shared))} and lie close, so that they mix and both are seen, at {low:g} and {high:g} cm⁻¹"
         )
         test = "isotopic substitution or pressure moves the two levels apart and changes their ratio"
-        score = 0.68 * (1 - (high - low) / (2 * RESONANCE_REACH))
+        score = 0.62 * (1 - (high - low) / (2 * RESONANCE_REACH)) * _sum_rule(family, expected, low + high)
         reasons.append(
             Reason("fermi_resonance", score, argument, (one.wavenumber, two.wavenumber, partner.wavenumber),
                    tuple(sorted(shared)), test)
         )  # fmt: skip
     return reasons
+
+
+def _sum_rule(family: Family, level: float, seen: float) -> float:
+    """Two levels that repel each other keep their sum: 1 when the free fundamental and the level add up to what is seen."""
+    if family.wavenumber is None:
+        return 0.6
+    return exp(-(((seen - level - family.wavenumber) / 25.0) ** 2))

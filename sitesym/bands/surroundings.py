@@ -42,7 +42,7 @@ def room_reasons(band: Band) -> list[Reason]:
             continue
         cause = "atmosphere" if entry["kind"] == "atmosphere" else "instrument"
         argument = f"near {entry['wavenumber']:g} cm⁻¹: {entry['words']}"
-        score = 0.5 * (1 - 0.6 * off / window)
+        score = 0.62 * (1 - 0.6 * off / window)
         reasons.append(
             Reason(cause, score, argument, (), (), "measure without the sample, or with another laser line")
         )
