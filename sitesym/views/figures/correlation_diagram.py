@@ -11,8 +11,8 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from sitesym.selection import Activity
-from sitesym.views.figures.cell import LegendEntry
 from sitesym.views.figures.correlation_layers import Box, Layers, Tie, layers_of
+from sitesym.views.figures.scene import LegendEntry
 from sitesym.views.figures.spread import spread, stacked
 from sitesym.views.figures.svg import ACCENT, INK, PAPER, drawing, element, line, number, text
 from sitesym.views.figures.typeset import symbols, symbols_width, text_width, wrapped

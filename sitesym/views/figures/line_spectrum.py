@@ -13,6 +13,7 @@ from itertools import groupby
 from math import ceil, floor
 from typing import TYPE_CHECKING
 
+from sitesym.expected_bands import ExpectedBand
 from sitesym.views.figures.spread import spread, stacked
 from sitesym.views.figures.svg import ACCENT, INK, drawing, element, line, number, text
 from sitesym.views.figures.typeset import symbols, symbols_width, text_width
@@ -21,8 +22,8 @@ from sitesym.views.molecule_sentences import distinguishing_label
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis
-    from sitesym.expected_bands import ExpectedBand
     from sitesym.molecular import MoleculeRow
+    from sitesym.molecule_analysis import MoleculeAnalysis
 
 _WIDTH, _SIDE = 760.0, 16.0
 _SLOT, _LEAST, _GAP = 15.0, 40.0, 9.0
@@ -63,14 +64,33 @@ class _Scale:
 
 
 def line_spectrum(analysis: Analysis, name: str) -> str:
-    """The expected bands as SVG, "" if there are none to draw; `name` makes the ids unique on their page."""
+    """The expected bands of a crystal as SVG, "" if there are none; `name` makes the ids unique on their page."""
     molecular = analysis.molecular
-    shown = [band for band in molecular.bands if band.infrared or band.raman] if molecular else []
-    if molecular is None or not shown:
+    if molecular is None:
         return ""
-    units = [_unit_words(row, analysis) for row in molecular.molecules]
-    if len({band.row for band in shown}) == 1:
-        units = [""] * len(units)
+    several = len({band.row for band in molecular.bands}) > 1
+    units = [_unit_words(row, analysis) if several else "" for row in molecular.molecules]
+    return _drawing(molecular.bands, units, name, "Where bands are expected")
+
+
+def free_spectrum(result: MoleculeAnalysis, name: str) -> str:
+    """The known wavenumbers of a molecule alone, likewise."""
+    bands = [
+        ExpectedBand(
+            result.formula, 0, known.name, one.species, one.kind, known.wavenumber, known.given, one.species, 1,
+            one.dimension, one.activity.infrared, one.activity.raman, one.activity.polar,
+        )
+        for one, names in zip(result.vibrations, result.names, strict=True)
+        for known in names
+        if known.wavenumber is not None
+    ]  # fmt: skip
+    return _drawing(bands, [""], name, "Known wavenumbers of the free molecule")
+
+
+def _drawing(bands: Sequence[ExpectedBand], units: Sequence[str], name: str, title: str) -> str:
+    shown = [band for band in bands if band.infrared or band.raman]
+    if not shown:
+        return ""
     infrared = _groups([band for band in shown if band.infrared], units)
     raman = _groups([band for band in shown if band.raman], units)
     scale = _scale([band.wavenumber for band in shown], max(_needed(infrared), _needed(raman), _WIDTH))
@@ -81,7 +101,7 @@ def line_spectrum(analysis: Analysis, name: str) -> str:
         *_row(raman, scale, above + _AXIS, 1, "Raman"),
     ]
     box = (0.0, 0.0, scale.width, above + _AXIS + below)
-    return drawing(name, "Where bands are expected", _description(infrared, raman), box, *parts)
+    return drawing(name, title, _description(infrared, raman), box, *parts)
 
 
 def _unit_words(row: MoleculeRow, analysis: Analysis) -> str:
