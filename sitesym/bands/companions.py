@@ -115,11 +115,12 @@ def isotope_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
     """Weak satellites of strong internal fundamentals: between no shift and that of an atom moving alone."""
     reasons = []
     for one in placed:
-        family = one.family
-        if family is None or not family.is_internal or one.band is band or one.band.technique != band.technique:
+        if one.band is band or one.band.technique != band.technique:
             continue
-        for isotope in rare_isotopes():
-            reasons += _satellite(band, one.band, family, isotope)
+        places = (one.family, *one.alternatives)
+        family = next((place for place in places if place is not None and place.is_internal), None)
+        if family is not None:
+            reasons += [reason for isotope in rare_isotopes() for reason in _satellite(band, one.band, family, isotope)]
     return reasons
 
 

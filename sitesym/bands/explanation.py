@@ -114,7 +114,7 @@ def _reasons(
         mine = [
             other.band for other in placed if other.family is one.family and other.band.technique == band.technique
         ]
-        return ranked([*_of_place(analysis, one, mine), *found])
+        return ranked([*_of_place(analysis, one, mine, others), *found])
     found += [
         *level_reasons(analysis, band, parents),
         *disorder_reasons(analysis, band, families),
@@ -124,12 +124,16 @@ def _reasons(
     return ranked(found)
 
 
-def _of_place(analysis: Analysis, one: Placed, mine: Sequence[Band]) -> list[Reason]:
+def _of_place(analysis: Analysis, one: Placed, mine: Sequence[Band], others: Sequence[Placed]) -> list[Reason]:
     """Reasons of the band's own place, and of other places that cost little more; less where polarization is against it."""
     found = reasons_of_place(one, mine)
     for other in one.alternatives:
         moved = replace(one, family=other, cost=one.cost + 1.0)
-        found += [replace(reason, score=0.6 * reason.score) for reason in reasons_of_place(moved, [one.band])]
+        siblings = [
+            placed.band for placed in others if placed.family is other and placed.band.technique == one.band.technique
+        ]
+        reasons = reasons_of_place(moved, [*siblings, one.band])
+        found += [replace(reason, score=0.6 * reason.score) for reason in reasons]
     shown = shown_species(analysis, one.band)
     return [
         reason if shown is None or shown & set(reason.species) else replace(reason, score=0.3 * reason.score)
