@@ -9,19 +9,17 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from sitesym.version import __version__
 from sitesym.views import sentences
 from sitesym.views.html_molecules import molecules_part, origins_part
-from sitesym.views.labels import HTML, decomposition, printable
+from sitesym.views.labels import HTML
 from sitesym.views.method import paragraphs, references
 from sitesym.views.tables import site_table, tensor_groups
+from sitesym.views.templating import environment, ready
 
 if TYPE_CHECKING:
-    from jinja2 import Environment
-
     from sitesym.analysis import Analysis
 
 Values = dict[str, Any]
@@ -48,7 +46,7 @@ def page(analysis: Analysis) -> str:
     """The whole report as an HTML document in one string, to be written as UTF-8."""
     shown = [(part, contents) for part in PARTS if (contents := part.contents(analysis)) is not None]
     structure = analysis.structure
-    return _environment().get_template("page.html").render(
+    return environment().get_template("page.html").render(
         parts=shown,
         structure=structure,
         title=f"{analysis.formula}, {sentences.space_group_words(analysis)}",
@@ -61,61 +59,16 @@ def page(analysis: Analysis) -> str:
     )  # fmt: skip
 
 
-@lru_cache(maxsize=1)
-def _environment() -> Environment:
-    from jinja2 import Environment, PackageLoader, StrictUndefined
-
-    environment = Environment(
-        loader=PackageLoader("sitesym.views", "templates"),
-        autoescape=True,
-        undefined=StrictUndefined,
-        trim_blocks=True,
-        lstrip_blocks=True,
-        finalize=_harmless,
-    )
-    environment.filters.update({
-        "species": _safe(HTML.species), "symbol": _safe(HTML.symbol), "schoenflies": _safe(HTML.schoenflies),
-        "formula": _safe(HTML.formula), "decomposition": _safe(lambda counts: decomposition(counts, HTML)),
-        "drawn": _safe(lambda svg: svg),
-    })  # fmt: skip
-    return environment
-
-
-def _harmless(value: Any) -> Any:
-    """Text from strangers without signs that steer or turn the writing; the templates escape it besides."""
-    from markupsafe import Markup
-
-    return printable(value) if isinstance(value, str) and not isinstance(value, Markup) else value
-
-
-def _safe(maker: Callable[[Any], str]) -> Callable[[Any], str]:
-    """The maker's text, which is HTML and safe already."""
-
-    def marked(value: Any) -> str:
-        from markupsafe import Markup
-
-        return Markup(maker(value))
-
-    return marked
-
-
-def _ready(text: str) -> str:
-    """Text that `sentences` or `method` has set in the style HTML."""
-    from markupsafe import Markup
-
-    return Markup(text)
-
-
 def _answer(analysis: Analysis) -> Values:
     return {
-        "rows": [(row, _ready(row.species)) for row in sentences.count_rows(analysis, HTML)],
-        "optic": _ready(sentences.optic_sum(analysis, HTML)),
-        "acoustic": _ready(sentences.acoustic_sum(analysis, HTML)),
-        "space_group": _ready(sentences.space_group_words(analysis, HTML)),
-        "factor_group": _ready(sentences.factor_group_words(analysis, HTML)),
+        "rows": [(row, ready(row.species)) for row in sentences.count_rows(analysis, HTML)],
+        "optic": ready(sentences.optic_sum(analysis, HTML)),
+        "acoustic": ready(sentences.acoustic_sum(analysis, HTML)),
+        "space_group": ready(sentences.space_group_words(analysis, HTML)),
+        "factor_group": ready(sentences.factor_group_words(analysis, HTML)),
         "axes": analysis.axes,
         "atoms": sentences.atoms_words(analysis),
-        "exclusion": _ready(sentences.exclusion(analysis, HTML)),
+        "exclusion": ready(sentences.exclusion(analysis, HTML)),
     }
 
 
@@ -133,7 +86,7 @@ def _cell(analysis: Analysis) -> Values:
         "lengths": list(zip("abc", lengths.tolist(), strict=True)),
         "angles": list(zip("αβγ", angles.tolist(), strict=True)),
         "axes": analysis.axes,
-        "declared": _ready(sentences.declared_words(analysis, HTML)),
+        "declared": ready(sentences.declared_words(analysis, HTML)),
     }
 
 
@@ -148,7 +101,7 @@ def _species(analysis: Analysis) -> Values:
         "acoustic": sum(row.acoustic for row in analysis.species),
         "totals": analysis.totals,
         "origins": origins_part(analysis),
-        "notes": [_ready(note) for note in sentences.notes(analysis, HTML) if note != exclusion],
+        "notes": [ready(note) for note in sentences.notes(analysis, HTML) if note != exclusion],
     }
 
 
@@ -177,12 +130,12 @@ def _tolerance(analysis: Analysis) -> Values | None:
 def _settings(analysis: Analysis) -> Values | None:
     if not analysis.settings:
         return None
-    return {"rows": analysis.settings, "note": _ready(sentences.permutation_note(analysis, HTML))}
+    return {"rows": analysis.settings, "note": ready(sentences.permutation_note(analysis, HTML))}
 
 
 def _method(analysis: Analysis) -> Values:
     return {
-        "paragraphs": [(one.heading, _ready(one.text)) for one in paragraphs(analysis, HTML)],
+        "paragraphs": [(one.heading, ready(one.text)) for one in paragraphs(analysis, HTML)],
         "references": references(analysis),
     }
 
