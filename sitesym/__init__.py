@@ -1,8 +1,8 @@
 """Zone-centre vibrations of crystals: species, activity and polarization from a structure file.
 
-    import sitesym
-    structure = sitesym.read("calcite.cif")
-    analysis = sitesym.analyse(structure)
+import sitesym
+structure = sitesym.read("calcite.cif")
+analysis = sitesym.analyse(structure)
 """
 
 from __future__ import annotations
@@ -13,25 +13,34 @@ from sitesym.version import __version__
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, analyse
+    from sitesym.bonding import BondRules
     from sitesym.errors import InconsistencyError, NotAStructureError, ReadError, SitesymError, UsageError
-    from sitesym.reading import read
+    from sitesym.molecule_analysis import MoleculeAnalysis, analyse_molecule, compare_molecules
+    from sitesym.reading import read, read_molecule
     from sitesym.structure import Structure
 
 _HOMES = {
     "Analysis": "sitesym.analysis",
     "analyse": "sitesym.analysis",
+    "BondRules": "sitesym.bonding",
     "InconsistencyError": "sitesym.errors",
     "NotAStructureError": "sitesym.errors",
     "ReadError": "sitesym.errors",
     "SitesymError": "sitesym.errors",
     "UsageError": "sitesym.errors",
+    "MoleculeAnalysis": "sitesym.molecule_analysis",
+    "analyse_molecule": "sitesym.molecule_analysis",
+    "compare_molecules": "sitesym.molecule_analysis",
     "read": "sitesym.reading",
+    "read_molecule": "sitesym.reading",
     "Structure": "sitesym.structure",
 }
 
 __all__ = [
     "Analysis",
+    "BondRules",
     "InconsistencyError",
+    "MoleculeAnalysis",
     "NotAStructureError",
     "ReadError",
     "SitesymError",
@@ -39,7 +48,10 @@ __all__ = [
     "UsageError",
     "__version__",
     "analyse",
+    "analyse_molecule",
+    "compare_molecules",
     "read",
+    "read_molecule",
 ]
 
 

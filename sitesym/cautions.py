@@ -13,9 +13,14 @@ _ORDER = (
 )  # fmt: skip
 
 
+_OCCUPANCIES = ("partial_occupancy", "mixed_occupancy")
+"""What the reader says of occupancies; it goes into the caution on the average structure."""
+
+
 def cautions_of(structure: Structure, symmetry: CrystalSymmetry, scan: Scan | None) -> tuple[OpenQuestion, ...]:
     """All open questions of the file and of the symmetry found, ordered by how much they may change the counts."""
-    found = [*structure.questions, *_declared(structure, symmetry), *_average(structure), *_cell(symmetry)]
+    told = [question for question in structure.questions if question.code not in _OCCUPANCIES]
+    found = [*told, *_declared(structure, symmetry), *_average(structure), *_cell(symmetry)]
     if scan is not None:
         found += [*_supergroup(scan), *_narrow(symmetry, scan)]
     rank = {code: index for index, code in enumerate(_ORDER)}
@@ -41,10 +46,11 @@ def _average(structure: Structure) -> list[OpenQuestion]:
     shared = sum(not site.is_ordered for site in structure.sites)
     if not shared:
         return []
+    read = [one.message.partition(": the analysis is of")[0] for one in structure.questions if one.code in _OCCUPANCIES]
+    which = "; ".join(read) or f"{shared} of {len(structure)} sites are partly or jointly occupied"
     message = (
-        f"{shared} of {len(structure)} sites are partly or jointly occupied: the counts are those of the average "
-        "structure, every site counted as if it were full. Real bands will be broader and more, and the selection "
-        "rules of the average are relaxed."
+        f"{which}: the counts are those of the average structure, every site counted as if it were full. Real bands "
+        "will be broader and more, and the selection rules of the average are relaxed."
     )
     return [OpenQuestion("average_structure", message)]
 

@@ -127,7 +127,7 @@ class MoleculeAnalysis:
     @property
     def has_exclusion(self) -> bool:
         """Whether a centre of inversion keeps infrared and Raman bands apart."""
-        return self.free.group.has_inversion
+        return self.free.group.has_inversion and not self.free.symmetry.is_atom
 
     def counts_of(self, kind: str) -> BandCounts:
         """Bands of one kind of vibration, such as "stretching"."""

@@ -22,6 +22,7 @@ from sitesym.views.sentences import infrared_words, raman_words, resonance_words
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
 
 Cell = str | int | float
 _FORMULA = ("=", "+", "-", "@", "\t", "\r")
@@ -48,6 +49,20 @@ def render(analysis: Analysis) -> str:
     if molecules(analysis):
         tables.append(molecules_table(analysis))
     return "\n".join(tables)
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The vibrations of a free molecule, one row for each species and kind."""
+    from sitesym.views.free_molecule_data import VIBRATION_COLUMNS, vibration_rows
+
+    return _table(VIBRATION_COLUMNS, vibration_rows(result))
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """Numbers of bands of two free molecules side by side."""
+    from sitesym.views.free_molecule_data import COMPARISON_COLUMNS, comparison_rows
+
+    return _table(COMPARISON_COLUMNS, comparison_rows(result))
 
 
 def species_table(analysis: Analysis) -> str:

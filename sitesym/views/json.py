@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     import numpy.typing as npt
 
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
     from sitesym.structure import OpenQuestion
 
     Floats = npt.NDArray[np.float64]
@@ -29,6 +30,20 @@ Document = dict[str, Any]
 def render(analysis: Analysis) -> str:
     """The document as text, ending in a line feed."""
     return json.dumps(document(analysis), indent=2, allow_nan=False, ensure_ascii=True) + "\n"
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The document of a free molecule as text."""
+    from sitesym.views.free_molecule_data import molecule_document
+
+    return json.dumps(molecule_document(result), indent=2, allow_nan=False, ensure_ascii=True) + "\n"
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """The document of two free molecules side by side as text."""
+    from sitesym.views.free_molecule_data import comparison_document
+
+    return json.dumps(comparison_document(result), indent=2, allow_nan=False, ensure_ascii=True) + "\n"
 
 
 def document(analysis: Analysis) -> Document:

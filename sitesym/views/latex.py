@@ -14,6 +14,7 @@ from sitesym.views.method import paragraphs, references
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
     from sitesym.molecular import MoleculeRow
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
 
 _plain = LATEX.plain
 
@@ -35,6 +36,22 @@ def render(analysis: Analysis) -> str:
         _method(analysis),
     ]
     return "\n\n".join("\n".join(part) for part in parts if part) + "\n"
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The report on a free molecule."""
+    from sitesym.views.blocks import as_latex
+    from sitesym.views.free_molecule import blocks, title
+
+    return as_latex(title(result, LATEX), blocks(result, LATEX))
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """The report on two free molecules side by side."""
+    from sitesym.views.blocks import as_latex
+    from sitesym.views.free_molecule import comparison_blocks, comparison_title
+
+    return as_latex(comparison_title(result, LATEX), comparison_blocks(result, LATEX))
 
 
 def _cautions(analysis: Analysis) -> list[str]:

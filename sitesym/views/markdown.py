@@ -13,6 +13,7 @@ from sitesym.views.method import paragraphs, references
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
     from sitesym.molecular import MoleculeRow
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
 
 _plain = MARKDOWN.plain
 
@@ -34,6 +35,22 @@ def render(analysis: Analysis) -> str:
         if body:
             lines += ["", f"## {title}", "", *body]
     return "\n".join(lines) + "\n"
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The report on a free molecule."""
+    from sitesym.views.blocks import as_markdown
+    from sitesym.views.free_molecule import blocks, title
+
+    return as_markdown(title(result, MARKDOWN), blocks(result, MARKDOWN))
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """The report on two free molecules side by side."""
+    from sitesym.views.blocks import as_markdown
+    from sitesym.views.free_molecule import comparison_blocks, comparison_title
+
+    return as_markdown(comparison_title(result, MARKDOWN), comparison_blocks(result, MARKDOWN))
 
 
 def _answer(analysis: Analysis) -> list[str]:

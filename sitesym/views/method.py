@@ -156,13 +156,14 @@ def _molecules(analysis: Analysis, style: Style) -> str:
     tolerance = molecular.tolerance or DEFAULT_TOLERANCE
     return fill(
         style,
-        "Atoms were taken as bonded by their distances and covalent radii {radii} and by the chemistry of the elements; "
-        "the reason stands with each unit. Point groups of free units were found from their positions at a tolerance "
-        f"of {tolerance:g} Å. Their internal vibrations were divided into stretching, bending, out-of-plane, torsional "
-        "and skeletal ones by the representations of internal coordinates, redundancies removed {coordinates}. Internal "
-        "vibrations, librations and translations were followed from the free unit through its site group to the factor "
-        "group {correlation} by the actual operations of the crystal, not by tables. Their sum equals the count by "
-        "atomic sites, species by species; chains, layers and nets were counted by atomic sites.",
+        "Atoms were taken as bonded by their distances, by covalent radii {radii} and by the chemistry of the "
+        "elements; the reason stands with each unit. Point groups of free units were found from their positions at a "
+        f"tolerance of {tolerance:g} Å. Their internal vibrations were divided into stretching, bending, out-of-plane, "
+        "torsional and skeletal ones by the representations of internal coordinates, redundancies removed "
+        "{coordinates}. Internal vibrations, librations and translations were followed from the free unit through its "
+        "site group to the factor group {correlation} by the actual operations of the crystal, not by tables. Their "
+        "sum equals the count by atomic sites, species by species; chains, layers and nets were counted by atomic "
+        "sites.",
         radii=_cite("covalent_radii"),
         coordinates=_cite("internal_coordinates"),
         correlation=_cite("site_group", "correlation_field", "unit_cell_group", "correlation_method"),

@@ -70,14 +70,14 @@ def _molecule(row: MoleculeRow) -> Document:
         "atoms": [characters(label) for label in units.unit.labels],
         "count_primitive": units.count,
         "point_group": ascii_words(free.group.schoenflies),
-        "deviation": _length(free.symmetry.deviation),
-        "needed_tolerance": _length(free.symmetry.needed_tolerance),
+        "deviation": length(free.symmetry.deviation),
+        "needed_tolerance": length(free.symmetry.needed_tolerance),
         "next_higher": _higher(row),
         "site_group": site_group.schoenflies,
         "hermann_mauguin": row.symbol,
         "wyckoff": row.wyckoff,
         "multiplicity": row.multiplicity,
-        "centre": [_length(value) for value in units.centre],
+        "centre": [length(value) for value in units.centre],
         "axes": [_axis(one) for one in row.orientation],
         "vibrations": [_vibration(row, index) for index in range(len(row.fates))],
         "librations": _motions(row.correlation.librations.site, row.correlation.librations.crystal, row.librations),
@@ -95,12 +95,12 @@ def _higher(row: MoleculeRow) -> Document | None:
         return None
     return {
         "point_group": ascii_words(row.free.higher_group),
-        "deviation": _length(higher.deviation),
-        "needed_tolerance": _length(higher.needed_tolerance),
+        "deviation": length(higher.deviation),
+        "needed_tolerance": length(higher.needed_tolerance),
     }
 
 
-def _length(value: float) -> float:
+def length(value: float) -> float:
     """Å or a fraction to ten decimals, without negative zeros."""
     return round(float(value), 10) + 0.0
 
@@ -108,7 +108,7 @@ def _length(value: float) -> float:
 def _axis(one: AxisRelation) -> Document:
     return {
         "name": one.name,
-        "direction": [_length(value) for value in one.direction],
+        "direction": [length(value) for value in one.direction],
         "nearest": one.nearest,
         "angle": round(one.angle, 6),
     }

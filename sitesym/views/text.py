@@ -16,6 +16,7 @@ from sitesym.views.molecule_text import origins, unit_sections
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
     from sitesym.structure import OpenQuestion
 
 SCREEN = 24
@@ -43,6 +44,22 @@ def render(analysis: Analysis) -> str:
         if body:
             lines += ["", title, "─" * len(title), *body]
     return "\n".join(line.rstrip() for line in lines) + "\n"
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The report on a free molecule."""
+    from sitesym.views.blocks import as_text
+    from sitesym.views.free_molecule import blocks, title
+
+    return as_text(title(result, TEXT), blocks(result, TEXT))
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """The report on two free molecules side by side."""
+    from sitesym.views.blocks import as_text
+    from sitesym.views.free_molecule import comparison_blocks, comparison_title
+
+    return as_text(comparison_title(result, TEXT), comparison_blocks(result, TEXT))
 
 
 def first_screen(analysis: Analysis) -> tuple[list[str], int]:
