@@ -19,6 +19,9 @@ UNPLACED = 6.0
 """Cost of leaving a band without a place: that of a shift of three and a half standard deviations."""
 
 _FURTHER, _FORBIDDEN_FREE, _UNKNOWN, _BY_COUNT = 0.7, 1.2, 1.6, 0.9
+_LOWER_FIRST = 0.1
+"""Of bands that are placed by count alone the lower come first: longitudinal companions lie above."""
+
 _IMPOSSIBLE = 1e6
 
 
@@ -100,7 +103,7 @@ def _cost(
         return _IMPOSSIBLE
     extra = 0.0 if family.free_allows(technique) else _FORBIDDEN_FREE
     if family.wavenumber is None:
-        return extra + (_UNKNOWN if family.is_internal else _BY_COUNT)
+        return extra + (_UNKNOWN if family.is_internal else _BY_COUNT + _LOWER_FIRST * band.wavenumber / high)
     return extra + _shift_cost(band.wavenumber - family.wavenumber, family.wavenumber)
 
 

@@ -19,8 +19,8 @@ from sitesym.experiment.shown import what_it_shows
 from sitesym.geometry.notation import parse_geometry
 from sitesym.known_units import composition_of
 
-_LONGITUDINAL_REACH = 0.32
-"""Largest (LO − TO) / TO considered; the strongest polar modes of oxides reach it."""
+_LONGITUDINAL_REACH = 0.45
+"""Largest (LO − TO) / TO considered; the strongest polar modes of oxides and sulfides come near."""
 
 
 def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
@@ -43,8 +43,9 @@ def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
             if band.technique == RAMAN
             else "it appears at oblique incidence in p polarization, or in reflectance, not in a thin film at normal incidence"
         )
-        strong = 1.25 if band.intensity and one.band.intensity and band.intensity > 0.3 * one.band.intensity else 1.0
-        score = strong * (0.42 * (1 - ratio / _LONGITUDINAL_REACH) + 0.05)
+        weak = band.intensity and one.band.intensity and band.intensity < 0.3 * one.band.intensity
+        strong = 1.0 if weak else 1.25
+        score = strong * (0.42 * (1 - (ratio / _LONGITUDINAL_REACH) ** 2) + 0.05)
         reasons.append(
             Reason("longitudinal_companion", score, argument, (one.band.wavenumber,), tuple(polar), test)
         )
