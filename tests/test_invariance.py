@@ -91,13 +91,14 @@ def test_a_left_handed_cell_is_the_same_crystal() -> None:
     assert numbers(analyse(other, scan=False)) == EXPECTED["alpha-quartz"]
 
 
-@pytest.mark.parametrize("order", [(0, 1, 2), (1, 2, 0), (2, 0, 1), (1, 0, 2), (0, 2, 1), (2, 1, 0)])
-def test_labels_permute_with_the_axes_as_the_table_says(order: tuple[int, int, int]) -> None:
-    """Forsterite in all six settings: counts by label equal those of Pbnm carried through its printed table.
+ORTHORHOMBIC = ("forsterite", "lithium gallate", "sodium nitrite", "aluminium phosphate, low cristobalite form")
 
-    Pbnm, after Iishi, Am. Mineral. 63, 1198 (1978): 11 Ag + 11 B1g + 7 B2g + 7 B3g; from memory.
-    """
-    structure = CASES["forsterite"]
+
+@pytest.mark.parametrize("order", [(0, 1, 2), (1, 2, 0), (2, 0, 1), (1, 0, 2), (0, 2, 1), (2, 1, 0)])
+@pytest.mark.parametrize("name", ORTHORHOMBIC)
+def test_labels_permute_with_the_axes_as_the_table_says(name: str, order: tuple[int, int, int]) -> None:
+    """Crystals of mmm, mm2 and 222 in all six settings: counts by label are those carried through the printed table."""
+    structure = of_entry(ENTRIES[name])
     base = analyse(structure, scan=False)
     index = list(order)
     other = Structure(structure.lattice[index], structure.fractional[:, index], structure.sites)
@@ -107,7 +108,6 @@ def test_labels_permute_with_the_axes_as_the_table_says(order: tuple[int, int, i
     assert table.symbol == result.symmetry.setting.full
     for row in base.species:
         assert result.species_row(table.labels.get(row.label, row.label)).optic == row.optic
-    assert base.species_row("B1g").optic == 11
 
 
 @pytest.mark.parametrize(("symbol", "expected"), [("Pnma", (11, 7, 11, 7)), ("P b n m", (11, 11, 7, 7))])
