@@ -32,7 +32,7 @@ def _declared(structure: Structure, symmetry: CrystalSymmetry) -> list[OpenQuest
     if declared.number is None or declared.number == symmetry.number:
         return []
     name = declared.hermann_mauguin or f"number {declared.number}"
-    found = f"{symmetry.setting.short} (number {symmetry.number})"
+    found = f"{symmetry.setting.symbol} (number {symmetry.number})"
     reason = (
         "The file lists the atoms with less symmetry than they have"
         if declared.number < symmetry.number

@@ -73,7 +73,7 @@ def _try(structure: Structure, tolerance: float) -> Search | None:
 def _point(tolerance: float, found: Search | None) -> ScanPoint:
     if found is None:
         return ScanPoint(tolerance, None, "none found")
-    return ScanPoint(tolerance, found.number, setting(found.hall_number).short)
+    return ScanPoint(tolerance, found.number, setting(found.hall_number).symbol)
 
 
 def _plateau(ordered: list[tuple[float, Search | None]], tolerance: float, number: int) -> tuple[float, float]:
@@ -94,7 +94,7 @@ def _supergroup(
             continue
         if _per_atom(found) > _per_atom(symmetry.search):
             displacement, strain = _residual(structure, found, symmetry.search)
-            return Supergroup(found.number, setting(found.hall_number).short, tolerance, displacement, strain)
+            return Supergroup(found.number, setting(found.hall_number).symbol, tolerance, displacement, strain)
     return None
 
 
