@@ -21,6 +21,7 @@ from sitesym.views.templating import environment, ready
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis
+    from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
 
 Values = dict[str, Any]
 
@@ -40,6 +41,20 @@ class Part:
 def render(analysis: Analysis) -> str:
     """The page, under the name that all views share."""
     return page(analysis)
+
+
+def render_molecule(result: MoleculeAnalysis) -> str:
+    """The page on a molecule alone."""
+    from sitesym.views.html_free_molecule import molecule_page
+
+    return molecule_page(result)
+
+
+def render_comparison(result: MoleculeComparison) -> str:
+    """The page on two molecules side by side."""
+    from sitesym.views.html_free_molecule import comparison_page
+
+    return comparison_page(result)
 
 
 def page(analysis: Analysis) -> str:
