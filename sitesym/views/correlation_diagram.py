@@ -8,6 +8,10 @@ Layout: the species of the site divide the drawing into blocks, one below the ot
 the crystal stands in the block of the first species of the site that it belongs to, that one in the block's first line.
 Each species of the site has an upright line on either side unless it only meets species in its own line; on the left
 later blocks have theirs further out, on the right as well. So no two lines ever run along each other.
+
+A species of the site shares its line with one of the free unit only where all that belong to it stand in its block.
+Else its line begins at its upright line, with nothing on the left of it, and all other joints of the upright are ways
+in. So every drawing can be read in one way only. The same holds for the crystal, mirrored.
 """
 
 from __future__ import annotations
@@ -141,9 +145,13 @@ def _planned(fates: Sequence[Fate], free: Sequence[str], site: Sequence[str], cr
     height = 0
     for number, label in enumerate(site):
         rows[1][height] = label
-        rows[0].update(enumerate(blocks_left[number], start=height))
-        rows[2].update(enumerate(blocks_right[number], start=height))
-        height += max(len(blocks_left[number]), len(blocks_right[number]), 1)
+        late = [
+            _reaches_back(label, block, links)
+            for block, links in ((blocks_left[number], down), (blocks_right[number], up))
+        ]
+        rows[0].update(enumerate(blocks_left[number], start=height + late[0]))
+        rows[2].update(enumerate(blocks_right[number], start=height + late[1]))
+        height += max(len(blocks_left[number]) + late[0], len(blocks_right[number]) + late[1], 1)
     left = {(r, k): down[one, two] for r, one in rows[0].items() for k, two in enumerate(site) if (one, two) in down}
     right = {(r, k): up[one, two] for r, one in rows[2].items() for k, two in enumerate(site) if (one, two) in up}
     return _Plan(height, *rows, left, right)
@@ -155,6 +163,11 @@ def _by_first(labels: Sequence[str], site: Sequence[str], links: Mapping[tuple[s
     for label in labels:
         blocks[next(k for k, one in enumerate(site) if (label, one) in links)].append(label)
     return blocks
+
+
+def _reaches_back(label: str, block: Sequence[str], links: Mapping[tuple[str, str], int]) -> bool:
+    """Whether a species of the site is linked to one that stands in an earlier block."""
+    return any(site == label and outer not in block for outer, site in links)
 
 
 # Lines between

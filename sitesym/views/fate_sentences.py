@@ -70,17 +70,15 @@ def at_site(site: str, fate: Fate, many: bool, style: Style) -> str:
 _NAMES = {"infrared": "infrared", "raman": "Raman"}
 
 
-def in_crystal(analysis: Analysis, fate: Fate, many: bool, alone: str, style: Style) -> str:
+def in_crystal(analysis: Analysis, fate: Fate, many: bool, alone: bool, style: Style) -> str:
     """`, splits into Eg (Raman) + Eu (infrared) by the correlation field`: what follows on `at_site`.
 
-    alone  what to call the unit where there is only one in the primitive cell, else "".
+    alone  whether there is only one such unit in the primitive cell.
     """
     parts = _components(analysis, fate.crystal, style)
     if alone:
-        return fill(
-            style, f", and {'are' if many else 'is'} {{parts}} in the crystal, with one {alone} in the "
-            "primitive cell and so no correlation splitting", parts=parts,
-        )  # fmt: skip
+        verb = "give" if fate.in_crystal.components > 1 else "become"
+        return fill(style, f", and {verb if many else f'{verb}s'} {{parts}} in the crystal", parts=parts)
     if fate.degeneracy in (Degeneracy.LIFTED, Degeneracy.PARTLY):
         split = [_branch(analysis, branch, style) for branch in fate.branches]
         return style.plain("; the correlation field ") + joined(split)

@@ -204,7 +204,7 @@ def vibration_sentence(analysis: Analysis, row: MoleculeRow, index: int, style: 
         _subject(row, index, style),
         " ",
         at_site(site_group_words(row, style), fate, many, style),
-        in_crystal(analysis, fate, many, unit_word(row) if row.units.count == 1 else "", style),
+        in_crystal(analysis, fate, many, row.units.count == 1, style),
         style.plain(f": {each}{bands_words(fate.in_crystal)}."),
     ))  # fmt: skip
 
@@ -232,23 +232,31 @@ def _subject(row: MoleculeRow, index: int, style: Style) -> str:
 
 def exclusion_sentence(analysis: Analysis, row: MoleculeRow, style: Style = TEXT) -> str:
     """Whether the internal vibrations of this unit may coincide in infrared and Raman, and why."""
+    alone = (
+        f"With one such {unit_word(row)} in the primitive cell the correlation field splits nothing. "
+        if row.units.count == 1
+        else ""
+    )
+    return style.plain(alone + _exclusion(analysis, row))
+
+
+def _exclusion(analysis: Analysis, row: MoleculeRow) -> str:
     site = row.units.site_group
     assert site is not None
     if site.has_inversion:
-        return style.plain(
+        return (
             "The unit sits on a centre of inversion: as in the free unit, none of its vibrations shows in both spectra."
         )
-    if not analysis.factor_group.has_inversion:
-        lost = "The free unit's centre of inversion is lost" if row.free.group.has_inversion else "There is none"
-        return style.plain(
-            f"{lost}: in this crystal without a centre of inversion infrared and Raman do not exclude each other."
-            if row.free.group.has_inversion
-            else "Neither the free unit nor the crystal has a centre of inversion: no exclusion."
+    if analysis.factor_group.has_inversion:
+        return (
+            "The site has no centre of inversion, the crystal has one: where a vibration shows in both spectra, the "
+            "bands belong to different components and may lie apart by the correlation splitting."
         )
-    return style.plain(
-        "The site has no centre of inversion, the crystal has one: where a vibration shows in both spectra, the bands "
-        "belong to different components and may lie apart by the correlation splitting."
-    )
+    if row.free.group.has_inversion:
+        return (
+            "The free unit's centre of inversion is lost in this crystal: infrared and Raman do not exclude each other."
+        )
+    return "Neither the free unit nor the crystal has a centre of inversion: infrared and Raman exclude nothing."
 
 
 # Several kinds of units; units that are no molecules
