@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 from sitesym.views import molecule_sentences as words
 from sitesym.views.labels import HTML
 from sitesym.views.molecule_tables import BAND_HEADER, band_cells
+from sitesym.views.templating import ready
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis
@@ -57,6 +58,11 @@ class Block:
     lines: tuple[VibrationLine, ...]
     sentences: tuple[str, ...]
 
+    @property
+    def known(self) -> bool:
+        """Whether some wavenumber is known."""
+        return any(line.wavenumbers for line in self.lines)
+
 
 def molecules_part(analysis: Analysis) -> Values | None:
     """What the section on molecules shows; None when they were not looked for."""
@@ -66,14 +72,14 @@ def molecules_part(analysis: Analysis) -> Values | None:
     if molecular is None:
         return None
     return {
-        "units": [_ready(one) for one in words.units_words(analysis, HTML)],
-        "notes": [_ready(one) for one in _notes(analysis)],
+        "units": [ready(one) for one in words.units_words(analysis, HTML)],
+        "notes": [ready(one) for one in _notes(analysis)],
         "reasons": _other_reasons(molecular),
         "blocks": [_block(analysis, row, number) for number, row in enumerate(molecular.molecules, start=1)],
         "key": diagram_key(),
         "spectrum": line_spectrum(analysis, "bands-drawing"),
         "spectrum_notes": [words.BAND_NOTE, words.without_wavenumber(molecular)],
-        "bands": [[_ready(cell) for cell in cells] for cells in band_cells(analysis, HTML)],
+        "bands": [[ready(cell) for cell in cells] for cells in band_cells(analysis, HTML)],
         "band_header": BAND_HEADER,
         "axes": analysis.axes,
     }
@@ -90,15 +96,8 @@ def origins_part(analysis: Analysis) -> Values | None:
         "names": names,
         "rows": rows,
         "sums": [sum(counts[column] for _, counts in rows) for column in range(len(names))],
-        "note": _ready(words.origin_note(HTML)),
+        "note": ready(words.origin_note(HTML)),
     }
-
-
-def _ready(text: str) -> str:
-    """Text that the sentences have set in the style HTML."""
-    from markupsafe import Markup
-
-    return Markup(text)
 
 
 def _notes(analysis: Analysis) -> list[str]:
@@ -110,13 +109,15 @@ def _notes(analysis: Analysis) -> list[str]:
 
 
 def _other_reasons(molecular: MolecularAnalysis) -> list[tuple[str, str]]:
-    """Formula and reason of what is no molecule, as far as no molecule's own block says it."""
+    """What is no molecule, with the reason why it ends where it does, as far as no molecule's own block says it."""
     told = {row.units.unit.reason for row in molecular.molecules}
     found: dict[str, str] = {}
     for one in (*molecular.nets, *molecular.unfollowed, *(atom.units for atom in molecular.atoms)):
         if one.unit.reason not in told and not any(one.unit.reason in longer for longer in told):
-            found.setdefault(one.unit.reason, one.unit.name)
-    return [(name, reason) for reason, name in found.items()]
+            label = one.unit.labels[0] if one.unit.labels and len(one.unit.atoms) == 1 else ""
+            named = f" <small>{HTML.plain(label)}</small>" if label not in ("", one.unit.name) else ""
+            found.setdefault(one.unit.reason, HTML.formula(one.unit.name) + named)
+    return [(ready(name), reason) for reason, name in found.items()]
 
 
 def _block(analysis: Analysis, row: MoleculeRow, number: int) -> Block:
@@ -129,12 +130,12 @@ def _block(analysis: Analysis, row: MoleculeRow, number: int) -> Block:
     sentences.append(words.exclusion_sentence(analysis, row, HTML))
     return Block(
         anchor,
-        _ready(words.title(row, analysis, HTML)),
-        tuple((name, _ready(text)) for name, text in _facts(analysis, row) if text),
-        tuple(_ready(one) for one in remarks if one),
+        ready(words.title(row, analysis, HTML)),
+        tuple((name, ready(text)) for name, text in _facts(analysis, row) if text),
+        tuple(ready(one) for one in remarks if one),
         correlation_diagram(analysis, row, f"{anchor}-diagram"),
         _lines(row, order),
-        tuple(_ready(one) for one in sentences if one),
+        tuple(ready(one) for one in sentences if one),
     )
 
 
@@ -144,7 +145,7 @@ def _facts(analysis: Analysis, row: MoleculeRow) -> tuple[tuple[str, str], ...]:
         ("Primitive cell", HTML.plain(f"{row.units.count} such {unit}{'s' if row.units.count > 1 else ''}")),
         ("Free group", words.free_group_words(row.free, HTML)),
         ("Site group", words.site_words(row, HTML)),
-        ("Axes", words.orientation_words(row, HTML)),
+        ("Its axes", words.orientation_words(row, HTML)),
         ("Bonds", HTML.plain(row.units.unit.reason)),
         ("Wavenumbers", HTML.plain(_source(row))),
     )
@@ -152,7 +153,7 @@ def _facts(analysis: Analysis, row: MoleculeRow) -> tuple[tuple[str, str], ...]:
 
 def _lines(row: MoleculeRow, order: Sequence[int]) -> tuple[VibrationLine, ...]:
     kinds = [one.kind for one in row.correlation.vibrations]
-    return tuple(VibrationLine(_ready(_names(row, k)), _known(row.names[k]), kinds[k], row.fates[k]) for k in order)
+    return tuple(VibrationLine(ready(_names(row, k)), _known(row.names[k]), kinds[k], row.fates[k]) for k in order)
 
 
 def _names(row: MoleculeRow, index: int) -> str:
