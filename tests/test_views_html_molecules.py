@@ -84,6 +84,13 @@ def test_drawings_are_xml_with_title_description_and_nothing_from_elsewhere(page
         assert not re.findall(r"https?://", document.replace("http://www.w3.org/2000/svg", ""))
 
 
+def test_words_for_screen_readers_do_not_widen_the_page(pages: dict[str, str]) -> None:
+    """They are placed absolutely, so the box that scrolls must be their frame; else a phone scrolls the whole page."""
+    rules = dict(re.findall(r"(\.[\w, .]+?) \{([^{}]*)\}", pages["calcite"]))
+    assert "position: absolute" in rules[".unseen, .skip"]
+    assert "position: relative" in rules[".scroll"]
+
+
 def test_page_of_calcite_tells_groups_site_orientation_and_bonds(pages: dict[str, str]) -> None:
     """D3h on D3 (32), Wyckoff position 6a, the axis along c, Ca-O no bond: Halford 1946 and International Tables."""
     words = squeezed(Reader(pages["calcite"]).text["molecules"])
