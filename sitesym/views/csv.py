@@ -55,14 +55,14 @@ def render_molecule(result: MoleculeAnalysis) -> str:
     """The vibrations of a free molecule, one row for each species and kind."""
     from sitesym.views.free_molecule_data import VIBRATION_COLUMNS, vibration_rows
 
-    return _table(VIBRATION_COLUMNS, vibration_rows(result))
+    return table(VIBRATION_COLUMNS, vibration_rows(result))
 
 
 def render_comparison(result: MoleculeComparison) -> str:
     """Numbers of bands of two free molecules side by side."""
     from sitesym.views.free_molecule_data import COMPARISON_COLUMNS, comparison_rows
 
-    return _table(COMPARISON_COLUMNS, comparison_rows(result))
+    return table(COMPARISON_COLUMNS, comparison_rows(result))
 
 
 def species_table(analysis: Analysis) -> str:
@@ -72,7 +72,7 @@ def species_table(analysis: Analysis) -> str:
         (*_species_cells(row), *(getattr(origins[row.label], name) if origins else "" for name in ORIGINS))
         for row in analysis.species
     ]
-    return _table(SPECIES_COLUMNS, rows)
+    return table(SPECIES_COLUMNS, rows)
 
 
 def _species_cells(row: SpeciesRow) -> tuple[Cell, ...]:
@@ -88,7 +88,7 @@ def sites_table(analysis: Analysis) -> str:
     """One row a set of equivalent sites, with one column for what it contributes to each species."""
     labels = tuple(row.label for row in analysis.species)
     rows = [(*_site_cells(row), *(row.contribution.get(label, 0) for label in labels)) for row in analysis.sites]
-    return _table((*SITE_COLUMNS, *labels), rows)
+    return table((*SITE_COLUMNS, *labels), rows)
 
 
 def _site_cells(row: SiteRow) -> tuple[Cell, ...]:
@@ -106,7 +106,7 @@ def molecules_table(analysis: Analysis) -> str:
         for number, row in enumerate(molecules(analysis), start=1)
         for path in paths(row)
     ]
-    return _table(MOLECULE_COLUMNS, rows)
+    return table(MOLECULE_COLUMNS, rows)
 
 
 def _path_cells(analysis: Analysis, number: int, path: Path) -> tuple[Cell, ...]:
@@ -132,7 +132,8 @@ def _yes(answer: bool) -> str:
     return "yes" if answer else "no"
 
 
-def _table(header: tuple[str, ...], rows: Iterable[tuple[Cell, ...]]) -> str:
+def table(header: tuple[str, ...], rows: Iterable[tuple[Cell, ...]]) -> str:
+    """One table as text: names of the columns, then the rows, text made harmless for spreadsheets."""
     stream = io.StringIO()
     writer = csv.writer(stream, lineterminator="\n")
     writer.writerow(header)
