@@ -8,6 +8,7 @@ A new command is a module in this folder and an entry in `COMMANDS`.
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 from collections.abc import Sequence
 from typing import NoReturn
@@ -36,6 +37,7 @@ class _Parser(argparse.ArgumentParser):
 def main(argv: Sequence[str] | None = None) -> int:
     """Run the command line and return the exit code."""
     traceback = "--traceback" in (sys.argv[1:] if argv is None else argv)
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # the matrices are small: threads would cost more than they give
     speak_utf8()
     try:
         return _run(argv)
