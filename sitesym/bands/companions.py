@@ -15,7 +15,7 @@ from sitesym.bands.inventory import Family
 from sitesym.bands.measurement import RAMAN, Band
 from sitesym.bands.reasons import Reason
 from sitesym.errors import UsageError
-from sitesym.experiment.shown import what_it_shows
+from sitesym.geometry.intensity import visible_species
 from sitesym.geometry.notation import parse_geometry
 from sitesym.known_units import composition_of
 
@@ -60,7 +60,7 @@ def shown_species(analysis: Analysis, band: Band) -> frozenset[str] | None:
         geometry = parse_geometry(band.geometry, analysis.symmetry.lattice)
     except UsageError:
         return None
-    return frozenset(one.label for one in what_it_shows(analysis, geometry).allowed)
+    return visible_species([row.tensor for row in analysis.species], geometry)
 
 
 def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family], own: Family | None) -> list[Reason]:

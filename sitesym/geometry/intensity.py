@@ -6,12 +6,16 @@ components of a species and averaged over incoherent polarizations.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 
 from sitesym.geometry.notation import Geometry
 from sitesym.groups.operation import Floats
+from sitesym.tensors import TensorSpecies
 
 Complexes = np.typing.NDArray[np.complex128]
+_VISIBLE = 1e-9
 
 
 def amplitudes(geometry: Geometry, basis: Floats) -> Complexes:
@@ -38,3 +42,13 @@ def quadratic_form(geometry: Geometry, bases: list[Floats]) -> Complexes:
 def intensity(form: Complexes, letters: Complexes | Floats) -> float:
     """letters^H Q letters, real and not negative."""
     return float(np.real(np.conj(letters) @ form @ letters))
+
+
+def visible_species(species: Sequence[TensorSpecies], geometry: Geometry) -> frozenset[str]:
+    """Labels of the species of which a geometry shows some component, whatever the phonon's wavevector."""
+    return frozenset(
+        one.label
+        for one in species
+        if one.letters
+        and np.abs(quadratic_form(geometry, [component.basis for component in one.components])).max() > _VISIBLE
+    )
