@@ -132,7 +132,7 @@ def _answer(result: MoleculeAnalysis, style: Style) -> Table:
         (style.plain(name), str(number), decomposition({one.label: one.internal for one in some}, style))
         for (name, some), number in zip(chosen.items(), numbers, strict=True)
     )
-    return Table((style.plain("seen in"), style.plain("frequencies"), style.plain("species")), rows, "<><")
+    return Table((style.plain("seen in"), style.plain("frequencies"), style.plain("species")), rows, "<><", (2,))
 
 
 def exclusion(result: MoleculeAnalysis, style: Style = TEXT) -> str:
