@@ -34,8 +34,11 @@ def units_words(analysis: Analysis, style: Style = TEXT) -> tuple[str, ...]:
     if molecular is None:
         return ()
     words = [_molecule_words(row, style) for row in molecular.molecules]
-    words += [_net_words(one, style) for one in molecular.nets]
-    words += [f"{one.units.count} {style.formula(one.units.unit.name)}" for one in molecular.atoms]
+    words += [_net_words(net, style) for net in molecular.nets]
+    atoms: dict[str, int] = {}
+    for one in molecular.atoms:
+        atoms[one.units.unit.name] = atoms.get(one.units.unit.name, 0) + one.units.count
+    words += [f"{count} {style.formula(name)}" for name, count in atoms.items()]
     words += [f"{one.count} {style.formula(one.unit.name)} (by atomic sites)" for one in molecular.unfollowed]
     return tuple(words)
 

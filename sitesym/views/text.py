@@ -65,7 +65,10 @@ def render_comparison(result: MoleculeComparison) -> str:
 def first_screen(analysis: Analysis) -> tuple[list[str], int]:
     """At most 24 lines: crystal, groups, axes, counts, cautions; and how many cautions found no room there."""
     top, top_left = _fitting(sentences.serious_cautions(analysis), _TOP_CAUTION_LINES)
-    head = [*_title(analysis), *top, "", *_crystal(analysis), "", *_sums(analysis), "", *_counts(analysis)]
+    rest = ["", *_sums(analysis), "", *_counts(analysis)]
+    head = [*_title(analysis), *top, "", *_crystal(analysis)]
+    room = SCREEN - 2 - len(head) - len(rest)
+    head += [*_units(analysis, min(max(room, 1), 2)), *rest]
     others = sentences.other_cautions(analysis)
     if not analysis.cautions:
         return [*head, "", "No cautions: nothing doubtful was found in the structure or its symmetry."], 0
@@ -110,9 +113,17 @@ def _crystal(analysis: Analysis) -> list[str]:
         ("Factor group", sentences.factor_group_words(analysis)),
         ("Axes", printable(analysis.axes)),
         ("Atoms", sentences.atoms_words(analysis)),
-        ("Units", clip("; ".join(units_words(analysis)), 2 * (WIDTH - _FIELD) - 4)),
     )
     return [line for name, words in fields if words for line in _field(name, words)]
+
+
+def _units(analysis: Analysis, lines: int) -> list[str]:
+    """The units found, cut to one or two lines; all of them stand in the section on units."""
+    words = "; ".join(units_words(analysis))
+    whole = _field("Units", words) if words else []
+    if len(whole) <= lines:
+        return whole
+    return [*whole[: lines - 1], clip(f"{whole[lines - 1]} …", WIDTH)]
 
 
 def _file(analysis: Analysis) -> str:
