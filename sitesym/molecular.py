@@ -54,6 +54,7 @@ class MoleculeRow:
     known                  the unit of the table from which they come, or None.
     source                 where tabulated wavenumbers come from, or "".
     remark                 what else to know about names and wavenumbers, or "".
+    alone                  whether the crystal holds nothing but units of this formula, which then bear no charge.
     stretches              the stretches of the free molecule by kinds of bonds.
     orientation            the molecule's axes in the crystal.
     """
@@ -69,6 +70,7 @@ class MoleculeRow:
     known: KnownUnit | None
     source: str
     remark: str
+    alone: bool
     stretches: tuple[BondStretches, ...]
     orientation: tuple[AxisRelation, ...]
 
@@ -236,6 +238,7 @@ def _row(symmetry: CrystalSymmetry, correlation: UnitCorrelation, alone: bool) -
         naming.unit,
         naming.source,
         naming.remark,
+        alone,
         bond_stretches(free.group, free.positions, free.bonds, free.elements),
         _orientation(symmetry, free),
     )

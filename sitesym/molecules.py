@@ -207,7 +207,9 @@ def _free_molecule(
     elements = tuple(cell.structure.elements[atom] for atom in unit.atoms)
     labels = tuple(cell.structure.sites[atom].label for atom in unit.atoms)
     required, local = list(site_group.matrices), _local_bonds(bonds, unit)
-    found = free_molecule(elements, labels, points, local, tolerance or DEFAULT_TOLERANCE, required)
+    found = free_molecule(
+        elements, labels, points, local, DEFAULT_TOLERANCE if tolerance is None else tolerance, required
+    )
     expected = known_groups(unit.formula)
     if tolerance is not None or not expected or found.group.schoenflies in expected:
         return found

@@ -104,7 +104,8 @@ def read_wavenumbers(path: str | os.PathLike[str]) -> Wavenumbers:
     entries = tuple(_assignment(row, f"{given.name}, {place}") for place, row in rows)
     if not entries:
         raise ReadError(
-            f"{given.name} gives no wavenumbers.", "See the examples in the documentation of --wavenumbers."
+            f"{given.name} gives no wavenumbers.",
+            "Below the line unit,name,wavenumber write for example: CO3,nu3,1407.",
         )
     return Wavenumbers(given.name, entries)
 

@@ -122,7 +122,7 @@ def test_sentences_on_calcite_say_what_the_literature_says() -> None:
         ("urea", "CH₄N₂O", "become E (infrared E ∥ (x, y) and Raman) in the crystal: each gives one band, in"),
         ("benzene", "C₆H₆", "ν10 (E₁g out-of-plane, near 847 cm⁻¹, Raman only in the free molecule) is split by the Ci "
          "site into 2Ag; the correlation field splits each Ag into Ag + B₁g + B₂g + B₃g (all Raman): eight Raman"),
-        ("hexamine", "C₆H₁₂N₄", "T₂ stretching vibrations (infrared and Raman in the free unit) keep their degeneracy"),
+        ("hexamine", "C₆H₁₂N₄", "T₂ stretching vibrations (infrared and Raman in the free molecule) keep their"),
         ("hexamine", "C₆H₁₂N₄", "infrared and Raman exclude nothing"),
         ("sodium azide", "N₃", "z ∥ c"),
         ("carbon dioxide", "CO₂", "z ∥ [111]"),
@@ -163,7 +163,7 @@ def test_inequivalent_units_are_told_and_have_a_diagram_each() -> None:
     result = analyse(structure, scan=False)
     report = " ".join(text.render(result).split())
     assert (
-        "There are two inequivalent kinds of water (H₂O), 2 on C₁ and 2 on C₁ sites: up to twice as many O-H "
+        "There are two inequivalent kinds of water (H₂O), on C₁ sites: up to twice as many O-H "
         "stretching bands as for one kind."
     ) in report
     titles = [title for title, _ in unit_sections(result)]

@@ -61,9 +61,9 @@ def site_group_words(row: MoleculeRow, style: Style = TEXT) -> str:
 
 
 def unit_word(row: MoleculeRow) -> str:
-    """What to call the unit: ion or molecule where the table of common units tells, else unit."""
+    """What to call the unit: ion or molecule where the table of common units or the formulas tell, else unit."""
     if row.known is None:
-        return "unit"
+        return "molecule" if row.alone else "unit"
     return "ion" if row.known.charge else "molecule"
 
 
@@ -276,11 +276,12 @@ def _inequivalent(rows: Sequence[MoleculeRow], style: Style) -> str:
     pairs = sorted({pair for row in rows for pair in row.bond_pairs})
     bonds = f"{pairs[0]} stretching bands" if len(pairs) == 1 else "bands of each internal vibration"
     times = {2: "twice", 3: "three times"}.get(len(rows), f"{len(rows)} times")
-    sites = joined([f"{row.units.count} on {site_group_words(row, style)}" for row in rows])
+    groups = [site_group_words(row, style) for row in rows]
+    sites = groups[0] if len(set(groups)) == 1 else joined(groups)
     return fill(
         style,
-        f"There are {spelled(len(rows))} inequivalent kinds of {name}, {{sites}} sites: up to {times} as many {bonds} "
-        "as for one kind. Symmetry does not tell how far apart they lie.",
+        f"There are {spelled(len(rows))} inequivalent kinds of {name}, on {{sites}} sites: up to {times} as many "
+        f"{bonds} as for one kind. Symmetry does not tell how far apart they lie.",
         formula=style.formula(rows[0].name),
         sites=sites,
     )
