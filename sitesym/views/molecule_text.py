@@ -95,11 +95,13 @@ def _bands(analysis: Analysis, molecular: MolecularAnalysis) -> list[str]:
 
 
 def origins(analysis: Analysis) -> list[str]:
-    """A table of the optic modes by species and origin; origins that do not occur have no column."""
+    """A table of the optic modes by species and origin; none where all are of one origin that needs no table."""
     molecular = analysis.molecular
     if molecular is None:
         return []
     names = [name for name in words.ORIGINS if any(getattr(one, name) for one in molecular.origins.values())]
+    if names == ["framework"]:
+        return []
     rows = [("species", "optic", *names)]
     for row in analysis.species:
         counts = [row.optic, *(getattr(molecular.origins[row.label], name) for name in names)]
