@@ -102,13 +102,14 @@ class Isotope:
 def rare_isotopes() -> tuple[Isotope, ...]:
     """All isotopes but the most abundant of each element, from the table of the data folder."""
     text = files("sitesym").joinpath("data", "isotopes.toml").read_text(encoding="utf-8")
-    by_element: dict[str, list[tuple[str, float, float]]] = {}
-    for entry in tomllib.loads(text)["isotope"]:
-        by_element.setdefault(entry["element"], []).append((entry["name"], entry["abundance"], entry["mass"]))
     found = []
-    for element, rows in by_element.items():
-        main = max(rows, key=lambda row: row[1])
-        found += [Isotope(element, name, share, mass, main[2]) for name, share, mass in rows if name != main[0]]
+    for entry in tomllib.loads(text)["element"]:
+        main = max(entry["isotopes"], key=lambda one: float(one["abundance"]))
+        found += [
+            Isotope(entry["symbol"], f"{one['number']}{entry['symbol']}", one["abundance"] / 100, one["mass"], main["mass"])
+            for one in entry["isotopes"]
+            if one is not main
+        ]
     return tuple(found)
 
 

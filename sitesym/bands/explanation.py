@@ -74,11 +74,13 @@ def explain(
     suspects: Sequence[tuple[str, Analysis]] = (),
     pinned: Sequence[tuple[float, str]] = (),
     forbidden: Sequence[tuple[float, str]] = (),
+    laser: float | None = None,
 ) -> Explanation:
     """Explain measured bands.
 
     suspects            names and analyses of other phases that may be there.
     pinned, forbidden   (wavenumber, family name) pairs that the user insists on or rules out.
+    laser               wavelength in nm (air) of the Raman spectra, for lines of the room that stand at fixed wavelengths.
 
     Raises UsageError when there are no bands.
     """
@@ -89,7 +91,7 @@ def explain(
     placed = assign(ordered, families, pinned=pinned, forbidden=forbidden)
     lower = lowerings(analysis, families, ordered, placed)
     others = tuple(Suspect(name, inventory(other)) for name, other in suspects)
-    results = tuple(BandResult(one, _reasons(analysis, families, placed, one, lower, others)) for one in placed)
+    results = tuple(BandResult(one, _reasons(analysis, families, placed, one, lower, others, laser)) for one in placed)
     return Explanation(
         analysis, families, results, missing_bands(families, placed), lower, coincidences(analysis, families, ordered)
     )
@@ -97,7 +99,7 @@ def explain(
 
 def _reasons(
     analysis: Analysis, families: Sequence[Family], placed: Sequence[Placed], one: Placed,
-    lower: Sequence[Lowering], suspects: Sequence[Suspect],
+    lower: Sequence[Lowering], suspects: Sequence[Suspect], laser: float | None,
 ) -> tuple[Reason, ...]:  # fmt: skip
     band = one.band
     others = [other for other in placed if other is not one]
@@ -105,7 +107,7 @@ def _reasons(
     found = [
         *resonance_reasons(analysis, band, others, parents),
         *leakage_reasons(analysis, band, families, one.family),
-        *room_reasons(band),
+        *room_reasons(analysis, band, [other.band for other in placed], laser),
         *phase_reasons(band, suspects),
         *longitudinal_reasons(band, others),
         *isotope_reasons(band, others),
@@ -118,7 +120,7 @@ def _reasons(
     found += [
         *level_reasons(analysis, band, parents),
         *disorder_reasons(analysis, band, families),
-        *lowering_reasons(band, lower),
+        *lowering_reasons(band, lower, families),
         unexplained(band),
     ]
     return ranked(found)

@@ -145,7 +145,8 @@ def _resonances(
 ) -> list[Reason]:
     own = {component.label for component in family.active(band.technique)}
     reasons = []
-    for one, two in combinations_with_replacement(parents, 2):
+    internal = [parent for parent in parents if parent.family.is_internal]
+    for one, two in combinations_with_replacement(internal, 2):
         expected = one.wavenumber + two.wavenumber
         low, high = sorted((band.wavenumber, partner.wavenumber))
         if family in (one.family, two.family) or not low - 15 <= expected <= high + 15:

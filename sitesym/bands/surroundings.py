@@ -24,28 +24,80 @@ class Suspect:
     families: tuple[Family, ...]
 
 
-@lru_cache(maxsize=1)
-def _room() -> tuple[dict[str, Any], ...]:
+@dataclass(frozen=True, slots=True)
+class Feature:
+    """One line of the instrument or the room.
+
+    name, words, decide   what it is, when it is seen, and what tells it from the sample.
+    wavenumber, window    cm⁻¹; strength 1 for the strongest lines of a feature, less for others.
+    strongest             wavenumbers of the strong lines of the same feature, of which one must be seen first.
+    """
+
+    name: str
+    technique: str
+    cause: str
+    words: str
+    decide: str
+    wavenumber: float
+    window: float
+    strength: float
+    strongest: tuple[float, ...]
+
+
+_STRENGTHS = {"strong": 1.0, "medium": 0.75, "weak": 0.5}
+_SUBSTANCES = {"silicon": "Si", "diamond": "C"}
+"""Features that are the sample itself where it has this formula."""
+
+
+@lru_cache(maxsize=8)
+def features(laser: float | None = None) -> tuple[Feature, ...]:
+    """All lines of the table; those given as wavelengths only where the laser's wavelength (nm) is known."""
     text = files("sitesym").joinpath("data", "room_bands.toml").read_text(encoding="utf-8")
-    return tuple(tomllib.loads(text)["band"])
+    return tuple(one for entry in tomllib.loads(text)["feature"] for one in _lines(entry, laser))
 
 
-def room_reasons(band: Band) -> list[Reason]:
-    """Lines of the instrument, the substrate and the air near a band."""
-    reasons = []
-    for entry in _room():
-        if entry["technique"] != band.technique or "wavenumber" not in entry:
-            continue
-        window = float(entry.get("window", 4.0)) + band.uncertainty
-        off = abs(band.wavenumber - entry["wavenumber"])
-        if off > window:
-            continue
-        cause = "atmosphere" if entry["kind"] == "atmosphere" else "instrument"
-        argument = f"near {entry['wavenumber']:g} cm⁻¹: {entry['words']}"
-        score = 0.62 * (1 - 0.6 * off / window)
-        reasons.append(
-            Reason(cause, score, argument, (), (), "measure without the sample, or with another laser line")
+def _lines(entry: dict[str, Any], laser: float | None) -> list[Feature]:
+    placed = [(one, _place(one, laser)) for one in entry["bands"]]
+    strong = tuple(place[0] for one, place in placed if place and one["strength"] == "strong")
+    return [
+        Feature(
+            entry["name"], entry["technique"], entry["cause"], entry["words"], entry["decide"], place[0], place[1],
+            _STRENGTHS[one["strength"]], strong,
         )
+        for one, place in placed
+        if place is not None
+    ]  # fmt: skip
+
+
+def _place(one: dict[str, Any], laser: float | None) -> tuple[float, float] | None:
+    """Wavenumber and window in cm⁻¹; for an emission line the Raman shift at which it appears."""
+    if "wavenumber" in one:
+        return float(one["wavenumber"]), float(one["window"])
+    if laser is None:
+        return None
+    wavelength = float(one["wavelength"])
+    return 1e7 / laser - 1e7 / wavelength, 1e7 * float(one["window"]) / wavelength**2
+
+
+def room_reasons(
+    analysis: Analysis, band: Band, bands: Sequence[Band], laser: float | None = None
+) -> list[Reason]:
+    """Lines of the instrument, the substrate and the air near a band. `bands` are all that were measured."""
+    reasons = []
+    for one in features(laser):
+        window = one.window + band.uncertainty
+        off = abs(band.wavenumber - one.wavenumber)
+        if one.technique != band.technique or off > window or _SUBSTANCES.get(one.name) == analysis.formula:
+            continue
+        believed = one.strength == 1.0 or any(
+            abs(other.wavenumber - place) <= 5 + other.uncertainty and other.technique == band.technique
+            for other in bands
+            for place in one.strongest
+        )
+        argument = f"near {one.wavenumber:.4g} cm⁻¹, where {one.name} has a line: {one.words}"
+        score = 0.62 * one.strength * (1 - 0.6 * off / window) * (1.0 if believed else 0.4) * min(1.0, 16 / one.window)
+        score *= 0.8 if one.cause == "second_phase" else 1.0
+        reasons.append(Reason(one.cause, score, argument, (), (), one.decide))
     return reasons
 
 
@@ -79,20 +131,34 @@ def phase_reasons(band: Band, suspects: Sequence[Suspect]) -> list[Reason]:
     return reasons
 
 
-def lowering_reasons(band: Band, lowerings: Sequence[Lowering]) -> list[Reason]:
+def lowering_reasons(band: Band, lowerings: Sequence[Lowering], families: Sequence[Family]) -> list[Reason]:
     """Loss of the assumed symmetry, for bands that the highest such groups would give a place."""
     reasons = []
+    name, closeness = _forbidden_here(band, families)
     for rank, one in enumerate(lowerings):
         if band not in one.explains:
             continue
         argument = (
             f"would need the symmetry to be lowered to {one.name}, which allows {one.infrared} infrared and {one.raman} "
             f"Raman bands and gives {len(one.explains)} of the bands left over a place"
+            + (f"; {name} is forbidden in this technique and lies here" if name else "")
         )
-        score = (0.34 + 0.08 * min(len(one.explains) - 1, 4)) / (1 + 0.5 * rank)
+        score = (0.34 + 0.08 * min(len(one.explains) - 1, 4) + 0.24 * closeness) / (1 + 0.5 * rank)
         test = "further bands must split or appear; diffraction or second-harmonic generation can confirm it"
         reasons.append(Reason("symmetry_lowering", score, argument, (), (), test))
     return reasons
+
+
+def _forbidden_here(band: Band, families: Sequence[Family]) -> tuple[str, float]:
+    """The fundamental of known wavenumber, forbidden in the band's technique, that lies nearest; and how near (0 to 1)."""
+    best, name = 0.0, ""
+    for family in families:
+        if family.wavenumber is None or family.capacity(band.technique):
+            continue
+        off = abs(band.wavenumber - family.wavenumber) / (12 + 0.012 * family.wavenumber)
+        if 1 - off / 3 > best:
+            best, name = 1 - off / 3, family.name
+    return name, best
 
 
 def unexplained(band: Band) -> Reason:
