@@ -16,11 +16,12 @@ from sitesym.comparison.result import (
     Relation,
     SiteChange,
     Technique,
+    sees,
     summed,
 )
 from sitesym.errors import InconsistencyError, UsageError
 from sitesym.groups.subduction import Multiplicities, reduce_characters
-from sitesym.selection import Activity, activity_of
+from sitesym.selection import activity_of
 from sitesym.structure import OpenQuestion, Structure
 from sitesym.symmetry.crystal import DEFAULT_TOLERANCE
 
@@ -125,10 +126,10 @@ def _active(
 ) -> ActiveModes:
     def seen(parts: list[Multiplicities]) -> Multiplicities:
         whole = summed(parts, child)
-        return {k: n for k, n in whole.items() if _sees(activity_of(child.factor_group, k), name)}
+        return {k: n for k, n in whole.items() if sees(activity_of(child.factor_group, k), name)}
 
-    kept = [row for row in centre if _sees(row.activity, name)]
-    unseen = [row for row in centre if not _sees(row.activity, name)]
+    kept = [row for row in centre if sees(row.activity, name)]
+    unseen = [row for row in centre if not sees(row.activity, name)]
     return ActiveModes(
         name,
         sum(row.optic for row in kept),
@@ -137,10 +138,6 @@ def _active(
         seen([row.child for row in folded]),
         seen([row.all_modes for row in unseen if row.activity.silent]),
     )
-
-
-def _sees(activity: Activity, technique: Technique) -> bool:
-    return activity.infrared if technique == "infrared" else activity.raman
 
 
 def _cautions(parent: Analysis, child: Analysis, embedding: Embedding | None) -> tuple[OpenQuestion, ...]:

@@ -18,6 +18,11 @@ Technique = Literal["infrared", "raman"]
 TECHNIQUES: tuple[Technique, ...] = ("infrared", "raman")
 
 
+def sees(activity: Activity, technique: Technique) -> bool:
+    """Whether a technique sees a species with these selection rules."""
+    return activity.infrared if technique == "infrared" else activity.raman
+
+
 @dataclass(frozen=True, eq=False)
 class CentreRow:
     """One species of the parent's factor group.
@@ -66,6 +71,10 @@ class ActiveModes:
     zone_centre: Multiplicities
     folding: Multiplicities
     silent: Multiplicities
+
+    def seen(self, activity: Activity) -> bool:
+        """Whether the technique sees a species with these selection rules."""
+        return sees(activity, self.technique)
 
     @property
     def new(self) -> Multiplicities:
@@ -132,9 +141,9 @@ class Comparison:
 
     @property
     def becoming_symmetric(self) -> tuple[str, ...]:
-        """Zone-centre species of the parent that have modes and become, in part, totally symmetric in the child."""
+        """Species of the parent that have modes and become, in part, totally symmetric in the child but are not yet."""
         whole = self.child.factor_group.species[0].label
-        return tuple(row.label for row in self.centre if row.optic and whole in row.child)
+        return tuple(row.label for row in self.centre[1:] if row.optic and whole in row.child)
 
 
 def summed(parts: Iterable[Multiplicities], analysis: Analysis) -> Multiplicities:
