@@ -10,8 +10,8 @@ Every time is the best of several rounds, the rivals taking turns within a round
 limit is passed.
 
 This process imports nothing heavy, and every measurement runs in a process of its own: a child inherits the peak memory
-of its parent, and a warm import would flatter the next case. Linear algebra keeps to one thread, as it does in the command
-line: the matrices are small.
+of its parent, and a warm import would flatter the next case. Linear algebra keeps to one thread, as it does in the
+command line: the matrices are small.
 """
 
 import argparse
@@ -227,7 +227,7 @@ def molecule_rows(rounds: int, chains: str, molecular: str) -> list[Row]:
     fullerene = 1e3 * child(TIME_FULLERENE, str(rounds))["fullerene"]
     return [
         molecule_row("molecules, 496 atoms, Z' = 1 in Pbca", child(TIME_ANALYSIS, chains, str(rounds), "496"), 1.0),
-        molecule_row("molecules, 504 atoms, 21 sorts in P-1", child(TIME_ANALYSIS, molecular, str(rounds), "504"), None),
+        molecule_row("molecules, 504 atoms, 21 sorts, P-1", child(TIME_ANALYSIS, molecular, str(rounds), "504"), None),
         Row("point group of C60", fullerene, "300 ms", 300.0, "ms", 1.0),
     ]
 

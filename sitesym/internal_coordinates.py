@@ -76,7 +76,7 @@ def _unit(vectors: Floats) -> Floats:
 
 
 def _lengths(vectors: Floats) -> Floats:
-    return np.sqrt((vectors**2).sum(axis=-1, keepdims=True))
+    return np.asarray(np.sqrt((vectors**2).sum(axis=-1, keepdims=True)))
 
 
 def _rows(positions: Floats, count: int, parts: list[tuple[Integers, Floats]]) -> Floats:

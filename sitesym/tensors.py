@@ -156,9 +156,7 @@ def _antisymmetric(axial: Floats) -> tuple[str, ...]:
 
 def element_expressions(component: TensorComponent, letters: tuple[str, ...]) -> tuple[tuple[str, ...], ...]:
     """The (3, 3) elements written in letters: `a`, `-c`, `√3b`, `a+b`; empty strings where the element is zero."""
-    return tuple(
-        tuple(_expression(component.basis[:, i, j], letters) for j in range(3)) for i in range(3)
-    )
+    return tuple(tuple(_expression(component.basis[:, i, j], letters) for j in range(3)) for i in range(3))
 
 
 def _expression(coefficients: Floats, letters: tuple[str, ...]) -> str:

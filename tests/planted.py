@@ -20,10 +20,15 @@ from sitesym.bands.levels import allowed_species
 from sitesym.bands.measurement import INFRARED, RAMAN, TECHNIQUES, Band
 from sitesym.known_units import composition_of
 
-CRYSTALS = ("calcite", "sodium nitrate", "aragonite", "potassium nitrate", "barite", "potassium sulfate", "scheelite",
-            "carbon dioxide", "potassium hexachloroplatinate", "urea", "zircon", "ammonium chloride", "anhydrite")  # fmt: skip
-CAUSES = ("overtone", "combination", "isotopologue", "instrument", "atmosphere", "second_phase", "symmetry_lowering",
-          "leakage", "longitudinal_companion", "site_splitting", "correlation_splitting", "site_activation")  # fmt: skip
+CRYSTALS = (
+    "calcite", "sodium nitrate", "aragonite", "potassium nitrate", "barite", "potassium sulfate", "scheelite",
+    "carbon dioxide", "potassium hexachloroplatinate", "urea", "zircon", "ammonium chloride",
+    "anhydrite",
+)  # fmt: skip
+CAUSES = (
+    "overtone", "combination", "isotopologue", "instrument", "atmosphere", "second_phase", "symmetry_lowering",
+    "leakage", "longitudinal_companion", "site_splitting", "correlation_splitting", "site_activation",
+)  # fmt: skip
 
 
 @dataclass(frozen=True)
@@ -91,8 +96,12 @@ def draw(seed: int) -> Draw:
         if made is None:
             continue
         planted, suspects = made
-        bands = [Band(round(value, 1), technique, 1.0, 100.0) for (_, technique), values in seen.items() for value in values]
-        bands = [band for band in bands if band.technique != planted.technique or abs(band.wavenumber - planted.wavenumber) > 2.5]
+        bands = [
+            Band(round(value, 1), technique, 1.0, 100.0)
+            for (_, technique), values in seen.items()
+            for value in values
+            if technique != planted.technique or abs(value - planted.wavenumber) > 2.5
+        ]
         return Draw(name, (*bands, *lattice_bands(name, rng), planted), planted, cause, suspects)
     raise AssertionError("no spectrum could be made")
 

@@ -96,7 +96,7 @@ def test_wrong_words_are_refused() -> None:
     [("Oh", 98, 33), ("D6h", 54, 32), ("Td", 30, 11), ("D4h", 35, 27), ("D3d", 16, 10), ("D2h", 16, 16)],
 )
 def test_numbers_of_subgroups(name: str, groups: int, classes: int) -> None:
-    """Subgroups of m-3m and 6/mmm: International Tables A (2016), section 3.2; Lagrange's theorem holds. From memory."""
+    """Subgroups of m-3m and 6/mmm: International Tables A (2016), section 3.2; Lagrange's theorem. From memory."""
     found = subgroups(GROUPS[name])
     assert len(found) == classes
     assert sum(one.copies for one in found) == groups

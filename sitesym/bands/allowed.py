@@ -77,7 +77,7 @@ def _split(placed: Placed, family: Family, labels: tuple[str, ...], siblings: Se
         reasons.append(Reason("site_splitting", score, argument, (), labels, test))
     if crystal > site:
         argument = (
-            f"allowed as a further component of {family.name} ({family.free_species}): coupling of the equivalent units "
+            f"allowed as a further component of {family.name} ({family.free_species}): coupling of equivalent units "
             f"gives up to {crystal} bands in {_WORDS[technique]}, the site alone {site}"
         )
         test = "isotopic dilution removes correlation-field splitting; polarized spectra tell the components"

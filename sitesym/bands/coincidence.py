@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from math import exp
+from math import exp, hypot
 
 from sitesym.analysis import Analysis
 from sitesym.bands.inventory import Family
@@ -41,12 +41,12 @@ def coincidences(analysis: Analysis, families: Sequence[Family], bands: Sequence
 
 
 def _meet(one: Band, two: Band) -> bool:
-    return abs(one.wavenumber - two.wavenumber) <= (one.uncertainty**2 + two.uncertainty**2) ** 0.5
+    return abs(one.wavenumber - two.wavenumber) <= hypot(one.uncertainty, two.uncertainty)
 
 
 def _accident(one: Band, two: Band, families: Sequence[Family]) -> float:
     """Probability that two bands of one family's region meet by accident."""
-    reach = (one.uncertainty**2 + two.uncertainty**2) ** 0.5
+    reach = hypot(one.uncertainty, two.uncertainty)
     for family in families:
         low, high = family.window
         if low <= one.wavenumber <= high and low <= two.wavenumber <= high:

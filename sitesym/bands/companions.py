@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from functools import lru_cache
 from importlib.resources import files
 from math import exp, log
+from typing import Any
 
 from sitesym.analysis import Analysis
 from sitesym.bands.assignment import Placed
@@ -41,14 +42,12 @@ def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
         test = (
             "a geometry with the phonon's wavevector along the dipole shows LO, across it TO"
             if band.technique == RAMAN
-            else "it appears at oblique incidence in p polarization, or in reflectance, not in a thin film at normal incidence"
+            else "it appears in p polarization at oblique incidence, or in reflectance, not in a thin film at normal one"
         )
         weak = band.intensity and one.band.intensity and band.intensity < 0.3 * one.band.intensity
         strong = 1.0 if weak else 1.25
         score = strong * (0.42 * (1 - (ratio / _LONGITUDINAL_REACH) ** 2) + 0.05)
-        reasons.append(
-            Reason("longitudinal_companion", score, argument, (one.band.wavenumber,), tuple(polar), test)
-        )
+        reasons.append(Reason("longitudinal_companion", score, argument, (one.band.wavenumber,), tuple(polar), test))
     return reasons
 
 
@@ -78,8 +77,8 @@ def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family], 
         if not labels or shown & set(labels) or not low <= band.wavenumber <= high:
             continue
         argument = (
-            f"{', '.join(labels)} of {family.name} is forbidden in {band.geometry}; tilt, aperture or birefringence may "
-            "let some of it through"
+            f"{', '.join(labels)} of {family.name} is forbidden in {band.geometry}; tilt, aperture or birefringence "
+            "may let some of it through"
         )
         score = 0.85 if family is own else 0.5 if family.wavenumber else 0.25
         test = "turn the crystal by 90° or close the aperture: leakage changes, allowed bands stay"
@@ -89,7 +88,7 @@ def leakage_reasons(analysis: Analysis, band: Band, families: Sequence[Family], 
 
 @dataclass(frozen=True, slots=True)
 class Isotope:
-    """A rare isotope: element, name such as `13C`, natural abundance (0 to 1), its mass and that of the main one (u)."""
+    """A rare isotope: element, name (`13C`), natural abundance (0 to 1), its mass and that of the main one (u)."""
 
     element: str
     name: str
@@ -105,12 +104,12 @@ def rare_isotopes() -> tuple[Isotope, ...]:
     found = []
     for entry in tomllib.loads(text)["element"]:
         main = max(entry["isotopes"], key=lambda one: float(one["abundance"]))
-        found += [
-            Isotope(entry["symbol"], f"{one['number']}{entry['symbol']}", one["abundance"] / 100, one["mass"], main["mass"])
-            for one in entry["isotopes"]
-            if one is not main
-        ]
+        found += [_isotope(entry["symbol"], one, main["mass"]) for one in entry["isotopes"] if one is not main]
     return tuple(found)
+
+
+def _isotope(symbol: str, entry: dict[str, Any], main_mass: float) -> Isotope:
+    return Isotope(symbol, f"{entry['number']}{symbol}", entry["abundance"] / 100, entry["mass"], main_mass)
 
 
 def isotope_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:

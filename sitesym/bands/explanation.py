@@ -80,7 +80,7 @@ def explain(
 
     suspects            names and analyses of other phases that may be there.
     pinned, forbidden   (wavenumber, family name) pairs that the user insists on or rules out.
-    laser               wavelength in nm (air) of the Raman spectra, for lines of the room that stand at fixed wavelengths.
+    laser               wavelength in nm (air) of the Raman spectra, for lines of the room at fixed wavelengths.
 
     Raises UsageError when there are no bands.
     """
@@ -113,9 +113,7 @@ def _reasons(
         *isotope_reasons(band, others),
     ]
     if one.family is not None:
-        mine = [
-            other.band for other in placed if other.family is one.family and other.band.technique == band.technique
-        ]
+        mine = [other.band for other in placed if other.family is one.family and other.band.technique == band.technique]
         return ranked([*_of_place(analysis, one, mine, others), *found])
     found += [
         *level_reasons(analysis, band, parents),
@@ -127,7 +125,7 @@ def _reasons(
 
 
 def _of_place(analysis: Analysis, one: Placed, mine: Sequence[Band], others: Sequence[Placed]) -> list[Reason]:
-    """Reasons of the band's own place, and of other places that cost little more; less where polarization is against it."""
+    """Reasons of the band's own place and of places that cost little more; less where polarization is against them."""
     found = reasons_of_place(one, mine)
     for other in one.alternatives:
         moved = replace(one, family=other, cost=one.cost + 1.0)

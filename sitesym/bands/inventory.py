@@ -120,9 +120,7 @@ def _is_light(row: MoleculeRow) -> bool:
     return 2 * hydrogen >= len(row.free.elements)
 
 
-def _by_origin(
-    analysis: Analysis, unit: str, vibration: str, origin: str, window: tuple[float, float]
-) -> list[Family]:
+def _by_origin(analysis: Analysis, unit: str, vibration: str, origin: str, window: tuple[float, float]) -> list[Family]:
     parts = tuple(
         Component(number, row.activity) for row in analysis.species if (number := _number(analysis, row.label, origin))
     )

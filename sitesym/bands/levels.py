@@ -94,9 +94,7 @@ def _difference(group: PointGroup, band: Band, one: Parent, two: Parent) -> list
         f"{lower.wavenumber:g} = {expected:g} cm⁻¹; the lower level must be populated"
     )
     test = "differences vanish on cooling"
-    return [
-        Reason("combination", 0.18 * fit, argument, (upper.wavenumber, lower.wavenumber), species, test)
-    ]
+    return [Reason("combination", 0.18 * fit, argument, (upper.wavenumber, lower.wavenumber), species, test)]
 
 
 def _units(one: Parent, two: Parent) -> str:
@@ -126,7 +124,9 @@ def allowed_species(group: PointGroup, one: Family, two: Family, same: bool, tec
     return tuple(rule.label for rule in rules if (rule.raman if technique == RAMAN else rule.infrared))
 
 
-def resonance_reasons(analysis: Analysis, band: Band, placed: Sequence[Placed], parents: Sequence[Parent]) -> list[Reason]:
+def resonance_reasons(
+    analysis: Analysis, band: Band, placed: Sequence[Placed], parents: Sequence[Parent]
+) -> list[Reason]:
     """A band near a fundamental of the same species that a binary level of the parents would meet."""
     reasons = []
     for one in placed:
@@ -157,7 +157,7 @@ def _resonances(
         name = f"2{one.family.vibration}" if one is two else f"{one.family.vibration} + {two.family.vibration}"
         argument = (
             f"allowed as a Fermi resonance: {name} ({expected:g} cm⁻¹) and {family.name} share the species "
-            f"{', '.join(sorted(shared))} and lie close, so that they mix and both are seen, at {low:g} and {high:g} cm⁻¹"
+            f"{', '.join(sorted(shared))} and lie close, so that they mix and both are seen: {low:g} and {high:g} cm⁻¹"
         )
         test = "isotopic substitution or pressure moves the two levels apart and changes their ratio"
         score = 0.62 * (1 - (high - low) / (2 * RESONANCE_REACH)) * _sum_rule(family, expected, low + high)
@@ -169,7 +169,7 @@ def _resonances(
 
 
 def _sum_rule(family: Family, level: float, seen: float) -> float:
-    """Two levels that repel each other keep their sum: 1 when the free fundamental and the level add up to what is seen."""
+    """Levels that repel each other keep their sum: 1 when free fundamental and level add up to what is seen."""
     if family.wavenumber is None:
         return 0.6
     return exp(-(((seen - level - family.wavenumber) / 25.0) ** 2))

@@ -44,9 +44,7 @@ def _span(placed: Sequence[Placed], technique: str) -> tuple[float, float]:
     return min(values), max(values)
 
 
-def _reasons(
-    family: Family, technique: str, seen: int, allowed: int, span: tuple[float, float]
-) -> tuple[str, ...]:
+def _reasons(family: Family, technique: str, seen: int, allowed: int, span: tuple[float, float]) -> tuple[str, ...]:
     words = []
     low, high = family.window
     if high < span[0] or low > span[1]:

@@ -79,9 +79,7 @@ def _place(one: dict[str, Any], laser: float | None) -> tuple[float, float] | No
     return 1e7 / laser - 1e7 / wavelength, 1e7 * float(one["window"]) / wavelength**2
 
 
-def room_reasons(
-    analysis: Analysis, band: Band, bands: Sequence[Band], laser: float | None = None
-) -> list[Reason]:
+def room_reasons(analysis: Analysis, band: Band, bands: Sequence[Band], laser: float | None = None) -> list[Reason]:
     """Lines of the instrument, the substrate and the air near a band. `bands` are all that were measured."""
     reasons = []
     for one in features(laser):
@@ -139,8 +137,8 @@ def lowering_reasons(band: Band, lowerings: Sequence[Lowering], families: Sequen
         if band not in one.explains:
             continue
         argument = (
-            f"would need the symmetry to be lowered to {one.name}, which allows {one.infrared} infrared and {one.raman} "
-            f"Raman bands and gives {len(one.explains)} of the bands left over a place"
+            f"would need the symmetry to be lowered to {one.name}, which allows {one.infrared} infrared and "
+            f"{one.raman} Raman bands and gives {len(one.explains)} of the bands left over a place"
             + (f"; {name} is forbidden in this technique and lies here" if name else "")
         )
         score = (0.34 + 0.08 * min(len(one.explains) - 1, 4) + 0.24 * closeness) / (1 + 0.5 * rank)
@@ -150,7 +148,7 @@ def lowering_reasons(band: Band, lowerings: Sequence[Lowering], families: Sequen
 
 
 def _forbidden_here(band: Band, families: Sequence[Family]) -> tuple[str, float]:
-    """The fundamental of known wavenumber, forbidden in the band's technique, that lies nearest; and how near (0 to 1)."""
+    """The nearest fundamental of known wavenumber that the technique forbids, and how near it is (0 to 1)."""
     best, name = 0.0, ""
     for family in families:
         if family.wavenumber is None or family.capacity(band.technique):

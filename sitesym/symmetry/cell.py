@@ -175,9 +175,7 @@ def _in_setting(cell: Cell, symbol: str) -> Cell:
     targets = [one for one in settings_of(cell.setting.number) if wanted in _names(one) and one.choice != "R"]
     if not targets:
         known = ", ".join(dict.fromkeys(one.full for one in settings_of(cell.setting.number)))
-        raise UsageError(
-            f"'{symbol}' is no setting of space group {cell.setting.number}.", f"Settings known: {known}."
-        )
+        raise UsageError(f"'{symbol}' is no setting of space group {cell.setting.number}.", f"Settings known: {known}.")
     for change in _changes_of_basis():
         for target in targets:
             candidate = cell.rebased(change, target)
