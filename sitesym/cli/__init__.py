@@ -13,6 +13,7 @@ import sys
 from collections.abc import Sequence
 from typing import NoReturn
 
+from sitesym.cli.compare import COMPARE
 from sitesym.cli.output import check_output, leave_standard_output, speak_utf8, write
 from sitesym.cli.report import REPORT
 from sitesym.cli.shared import FORMATS, Command
@@ -24,7 +25,7 @@ __all__ = ["COMMANDS", "FORMATS", "main"]
 INTERNAL = 4
 INTERRUPTED = 130
 
-COMMANDS = (REPORT,)
+COMMANDS = (REPORT, COMPARE)
 
 
 class _Parser(argparse.ArgumentParser):
