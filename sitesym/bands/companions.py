@@ -42,7 +42,7 @@ def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
         test = (
             "a geometry with the phonon's wavevector along the dipole shows LO, across it TO"
             if band.technique == RAMAN
-            else "it appears in p polarization at oblique incidence, or in reflectance, not in a thin film at normal one"
+            else "it appears in p polarization at oblique incidence, or in reflectance, not at normal incidence"
         )
         weak = band.intensity and one.band.intensity and band.intensity < 0.3 * one.band.intensity
         strong = 1.0 if weak else 1.25

@@ -34,7 +34,7 @@ def product(group: PointGroup, labels: Sequence[str]) -> Multiplicities:
 
 
 def symmetrised_power(group: PointGroup, label: str, order: int) -> Multiplicities:
-    """Species of one vibration excited `order` times: an overtone. A degenerate one gives fewer than the plain power."""
+    """Species of one vibration excited `order` times: an overtone; fewer than the plain power if degenerate."""
     return reduce_characters(group.species, power_characters(group, label, order))
 
 
