@@ -37,10 +37,11 @@ _WIDEST = {"raman": 60.0, "infrared": 400.0}
 """cm⁻¹, full width; wider humps of Raman spectra are fluorescence or glass (common practice)."""
 
 _BETTER = 12.0
-"""By how much Schwarz's criterion must fall for a doubtful band; above 10 is called very strong (Kass and Raftery 1995)."""
+"""By how much Schwarz's criterion must fall for a doubtful band; 10 is called very strong (Kass and Raftery 1995)."""
 
 _REACH, _FLANK, _TOGETHER = 2.5, 0.15, 7
-"""Bands are fitted together within so many widths, or where a flank has this share of the other's height; at most so many."""
+"""Bands are fitted together within so many widths, or where a flank has this share of the other's height; at most so
+many at a time."""
 
 _HELD = 0.98
 """A band whose width the fit had to hold below the widest allowed is background."""
