@@ -1,0 +1,74 @@
+"""Published bands against the first reasons that the tool gives: see tests/reference/spectra.toml for sources.
+
+The cause that the literature gives must stand first. Where the reference file itself says that other causes are as
+defensible (`accept`), the literature's cause must be among the first three, and the first must be one of those named.
+"""
+
+from __future__ import annotations
+
+from functools import cache
+from typing import Any
+
+import pytest
+from literature import expanded, reference
+
+from sitesym.analysis import Analysis, analyse
+from sitesym.bands.explanation import BandResult, Explanation, explain
+from sitesym.bands.measurement import TECHNIQUES, Band
+
+CASES = {case["name"]: case for case in reference("spectra.toml")["case"]}
+BANDS = [(name, way, k) for name, case in CASES.items() for way in TECHNIQUES for k in range(len(case.get(way, [])))]
+
+
+@cache
+def analysis_of(name: str) -> Analysis:
+    case = CASES[name]
+    return analyse(expanded(case["hermann_mauguin"], case["lattice"], case["sites"]), scan=False)
+
+
+@cache
+def explanation_of(name: str) -> Explanation:
+    """The case's bands explained, with its second phase as suspect where it names one."""
+    case = CASES[name]
+    bands = [
+        Band(
+            one["wavenumber"],
+            way,
+            intensity=one.get("intensity"),
+            width=one.get("width"),
+            geometry=one.get("polarization", ""),
+        )  # fmt: skip
+        for way in TECHNIQUES
+        for one in case.get(way, [])
+    ]
+    suspects = [(case["suspect"], analysis_of(case["suspect"]))] if case.get("suspect") else []
+    return explain(analysis_of(name), bands, suspects=suspects, laser=case.get("laser"))
+
+
+def result_of(name: str, way: str, wavenumber: float) -> BandResult:
+    return next(
+        one for one in explanation_of(name).bands if (one.band.technique, one.band.wavenumber) == (way, wavenumber)
+    )
+
+
+def causes(result: BandResult) -> list[str]:
+    """Causes in order of rank, each once."""
+    return list(dict.fromkeys(reason.cause for reason in result.reasons))
+
+
+def verdict(entry: dict[str, Any], found: list[str]) -> str:
+    """What is wrong with the ranking; an empty text where it agrees with the literature."""
+    expected: dict[str, Any] = entry["expected"]
+    accepted = [expected["cause"], *expected.get("accept", [])]
+    if found[0] not in accepted:
+        return f"{expected['cause']} expected, {found[0]} stands first"
+    if expected["cause"] not in found[:3]:
+        return f"{expected['cause']} expected, first three are {', '.join(found[:3])}"
+    return ""
+
+
+@pytest.mark.parametrize(("name", "way", "k"), BANDS, ids=lambda value: str(value).replace(" ", "_"))
+def test_cause_of_the_literature_stands_first(name: str, way: str, k: int) -> None:
+    entry = CASES[name][way][k]
+    result = result_of(name, way, entry["wavenumber"])
+    assert verdict(entry, causes(result)) == "", entry["expected"]
