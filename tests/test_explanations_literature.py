@@ -30,19 +30,14 @@ def analysis_of(name: str) -> Analysis:
 def explanation_of(name: str) -> Explanation:
     """The case's bands explained, with its second phase as suspect where it names one."""
     case = CASES[name]
-    bands = [
-        Band(
-            one["wavenumber"],
-            way,
-            intensity=one.get("intensity"),
-            width=one.get("width"),
-            geometry=one.get("polarization", ""),
-        )  # fmt: skip
-        for way in TECHNIQUES
-        for one in case.get(way, [])
-    ]
+    bands = [_band(one, way) for way in TECHNIQUES for one in case.get(way, [])]
     suspects = [(case["suspect"], analysis_of(case["suspect"]))] if case.get("suspect") else []
     return explain(analysis_of(name), bands, suspects=suspects, laser=case.get("laser"))
+
+
+def _band(entry: dict[str, Any], way: str) -> Band:
+    geometry = entry.get("polarization", "")
+    return Band(entry["wavenumber"], way, intensity=entry.get("intensity"), width=entry.get("width"), geometry=geometry)
 
 
 def result_of(name: str, way: str, wavenumber: float) -> BandResult:
