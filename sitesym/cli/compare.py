@@ -51,7 +51,7 @@ def _files(arguments: argparse.Namespace) -> tuple[tuple[str, str], ...]:
 
 def _analysed(arguments: argparse.Namespace, path: str, name: str) -> Any:
     """The analysis of one of the two files."""
-    from sitesym.analysis import analyse
+    from sitesym.comparison.compare import analysed
     from sitesym.reading import read
 
     given = vars(arguments)
@@ -59,7 +59,7 @@ def _analysed(arguments: argparse.Namespace, path: str, name: str) -> Any:
         path, block=given[f"{name}_block"], whole_cell=arguments.whole_cell, elements=given[f"{name}_elements"]
     )
     options = {} if arguments.tolerance is None else {"tolerance": arguments.tolerance}
-    return analyse(structure, setting=given[f"{name}_setting"], **options)
+    return analysed(structure, setting=given[f"{name}_setting"], **options)
 
 
 COMPARE = Command(

@@ -49,7 +49,7 @@ def compare(
     Raises UsageError for limits that make no sense, InconsistencyError when two routes to a number disagree.
     """
     _check(strain, displacement)
-    one, two = _analysed(parent, tolerance), _analysed(child, tolerance)
+    one, two = analysed(parent, tolerance), analysed(child, tolerance)
     found = find_relation(one.symmetry, two.symmetry, strain, displacement)
     if isinstance(found, Refusal):
         back = find_relation(two.symmetry, one.symmetry, strain, displacement)
@@ -72,8 +72,11 @@ def _check(strain: float, displacement: float) -> None:
         raise UsageError(f"A displacement of {displacement:g} Å is of no use.", "Give one above 0 and below 10 Å.")
 
 
-def _analysed(given: Structure | Analysis, tolerance: float) -> Analysis:
-    return given if isinstance(given, Analysis) else analyse(given, tolerance)
+def analysed(given: Structure | Analysis, tolerance: float = DEFAULT_TOLERANCE, setting: str | None = None) -> Analysis:
+    """The analysis of one of the two structures; units are not looked for where they would be those of an average."""
+    if isinstance(given, Analysis):
+        return given
+    return analyse(given, tolerance, setting=setting, molecules=given.is_ordered)
 
 
 def _centre_rows(parent: Analysis, child: Analysis, embedding: Embedding) -> list[CentreRow]:

@@ -97,9 +97,9 @@ def active_table(result: Comparison, style: Style) -> Table | None:
 def _active_rows(one: ActiveModes, result: Comparison, style: Style) -> list[tuple[str, ...]]:
     name = words.NAMES[one.technique]
     parts = (
-        (f"{one.parent} seen in the parent", one.kept),
-        ("others at the zone centre: new", one.zone_centre),
-        ("folding: new", one.folding),
+        (f"species seen in the parent ({one.parent})", one.kept),
+        ("species not seen there: new", one.zone_centre),
+        ("other wavevectors: new", one.folding),
     )
     order = [row.label for row in result.child.species]
     return [

@@ -6,6 +6,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from sitesym.comparison.result import TECHNIQUES
 from sitesym.version import __version__
 from sitesym.views import compare_words as words
 from sitesym.views.blocks import Block, Table
@@ -73,7 +74,7 @@ def render(result: Comparison) -> str:
         serious=_ready(cautions(result, HTML, serious=True)),
         fields=[(ready(name), ready(text)) for name, text in head.fields],
         crystals=_crystals(result),
-        parts=[(_Anchor("answer", "Answer"), None), *((one, one) for one in sections)],
+        parts=[(one, one) for one in (_Anchor("answer", "Answer"), _Anchor("cells", "Cells"), *sections)],
         sections=sections,
         version=__version__,
     )  # fmt: skip
@@ -87,18 +88,12 @@ class _Anchor:
 
 def _tally(result: Comparison) -> list[tuple[str, str, str]]:
     """Infrared and Raman: frequencies of parent and child, and what is new."""
+    between = " → " if result.embedding else " | "
     rows = []
-    for name, attribute in (("infrared", "infrared"), ("raman", "raman")):
-        counts = [getattr(one.totals, attribute) for one in (result.parent, result.child)]
-        new = sum(result.new("infrared" if name == "infrared" else "raman").values())
-        told = f"{new} newly active" if result.active and new else ""
-        rows.append(
-            (
-                words.NAMES[name],
-                f"{counts[0]} → {counts[1]}" if result.embedding else " | ".join(map(str, counts)),
-                told,
-            )
-        )
+    for technique in TECHNIQUES:
+        counts = (str(getattr(one.totals, technique)) for one in (result.parent, result.child))
+        new = sum(result.new(technique).values())
+        rows.append((words.NAMES[technique], between.join(counts), f"{new} newly active" if new else ""))
     return rows
 
 

@@ -178,17 +178,21 @@ def new_words(one: ActiveModes, result: Comparison, style: Style = TEXT) -> str:
     count = f"{one.parent or 'no'} {name} frequenc{'y' if one.parent == 1 else 'ies'}"
     lead = style.plain(f"The parent allows {count}, the child {one.child or 'none'}")
     split = style.plain(f"{one.split} more as degenerate species split") if one.split else ""
-    centre = _new(one.zone_centre, _dark(one, result, style), result, style)
-    folding = _new(one.folding, style.plain(_points(result)), result, style)
-    parts = [part for part in (split, centre, folding) if part]
+    new = [
+        _from(one.zone_centre, _dark(one, result, style), result, style),
+        _from(one.folding, style.plain(_points(result)), result, style),
+    ]
+    told = style.plain(", and ").join(part for part in new if part)
+    parts = [part for part in (split, told and style.plain("newly active ") + told) if part]
     return lead + (style.plain(": ") + style.plain("; ").join(parts) if parts else "") + style.plain(".")
 
 
-def _new(parts: Mapping[str, int], source: str, result: Comparison, style: Style) -> str:
+def _from(parts: Mapping[str, int], source: str, result: Comparison, style: Style) -> str:
+    """`B1 + 4E from T1u and T2u`; "" for nothing."""
     if not parts:
         return ""
     ordered = {one.label: parts[one.label] for one in result.child.species if parts.get(one.label)}
-    return fill(style, "newly active {species} from {source}", species=decomposition(ordered, style), source=source)
+    return fill(style, "{species} from {source}", species=decomposition(ordered, style), source=source)
 
 
 def _dark(one: ActiveModes, result: Comparison, style: Style) -> str:
