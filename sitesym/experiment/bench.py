@@ -121,8 +121,7 @@ def laser_bench(line: str | float, temperature: float = ROOM) -> LaserBench:
 
     Raises UsageError for a wavelength outside 220 to 1100 nm and for a temperature that is not above zero.
     """
-    if not 0 < temperature < 1e5:
-        raise UsageError(f"A temperature of {temperature:g} K makes no sense.", "Give the temperature in kelvin.")
+    check_temperature(temperature)
     laser = read_laser(line)
     return LaserBench(
         laser,
@@ -134,6 +133,12 @@ def laser_bench(line: str | float, temperature: float = ROOM) -> LaserBench:
         temperature,
         tuple(ratio(laser, shift, temperature) for shift in RATIO_SHIFTS),
     )
+
+
+def check_temperature(temperature: float) -> None:
+    """Raise UsageError for a temperature in K that is none."""
+    if not 0 < temperature < 1e5:
+        raise UsageError(f"A temperature of {temperature:g} K makes no sense.", "Give the temperature in kelvin.")
 
 
 def read_laser(line: str | float) -> Laser:

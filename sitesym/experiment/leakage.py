@@ -22,6 +22,7 @@ Complexes = np.typing.NDArray[np.complex128]
 _TILTS = 32
 _RINGS, _SPOKES = 8, 24
 _SMALL = 1e-9
+_LARGEST_INDEX = 10.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,11 +48,7 @@ def leaks(
 
     Raises UsageError for values that make no sense.
     """
-    if not 0 <= tilt <= 45 or not 0 <= aperture < index or index < 1:
-        raise UsageError(
-            f"A tilt of {tilt:g}°, an aperture of {aperture:g} and an index of {index:g} do not go together.",
-            "Give a tilt of 0 to 45°, an index of at least 1 and an aperture below it.",
-        )
+    check_conditions(tilt, aperture, index)
     found = []
     for row in raman_rows(analysis):
         tensors = _tensors(row)
@@ -62,6 +59,15 @@ def leaks(
             Leak(row.label, _tilted(tensors, geometry, tilt) / best, _coned(tensors, geometry, aperture, index) / best)
         )
     return tuple(found)
+
+
+def check_conditions(tilt: float, aperture: float, index: float) -> None:
+    """Raise UsageError for a tilt, a numerical aperture or a refractive index that make no sense."""
+    if not 0 <= tilt <= 45 or not 1 <= index <= _LARGEST_INDEX or not 0 <= aperture < index:
+        raise UsageError(
+            f"A tilt of {tilt:g}°, an aperture of {aperture:g} and an index of {index:g} do not go together.",
+            f"Give a tilt of 0 to 45°, an index of 1 to {_LARGEST_INDEX:g} and an aperture below it.",
+        )
 
 
 def _tensors(row: SpeciesRow) -> Floats:

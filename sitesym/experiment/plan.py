@@ -8,10 +8,11 @@ from dataclasses import dataclass, replace
 from sitesym.analysis import Analysis
 from sitesym.errors import UsageError
 from sitesym.experiment.candidates import Candidate, candidates
-from sitesym.experiment.cover import Cover, Demand, demands_of, least_cover, meets
+from sitesym.experiment.cover import Cover, Demand, demands_of, least_cover, meets, targets_of
 from sitesym.experiment.faces import helpful_faces
-from sitesym.experiment.leakage import Leak, leaks
+from sitesym.experiment.leakage import Leak, check_conditions, leaks
 from sitesym.experiment.optics import BeamNote, beam_notes, optical_activity
+from sitesym.experiment.phonons import LONGITUDINAL, TRANSVERSE
 from sitesym.experiment.shown import GeometryResult, raman_rows, what_it_shows
 from sitesym.geometry.notation import parse_geometry
 
@@ -49,11 +50,17 @@ class FurtherFace:
 
 @dataclass(frozen=True, slots=True)
 class Conditions:
-    """The conditions to which figures refer: tilt in degrees, numerical aperture, refractive index of the crystal."""
+    """The conditions to which figures refer: tilt in degrees, numerical aperture, refractive index of the crystal.
+
+    Raises UsageError for values that make no sense.
+    """
 
     tilt: float = 2.0
     aperture: float = 0.0
     index: float = 1.5
+
+    def __post_init__(self) -> None:
+        check_conditions(self.tilt, self.aperture, self.index)
 
 
 @dataclass(frozen=True, eq=False)
@@ -104,6 +111,18 @@ class Plan:
     def unseen(self) -> tuple[str, ...]:
         """Raman-active species that no measurement offered shows."""
         return tuple(demand.first for demand in self.cover.unmet if not demand.second)
+
+    @property
+    def other_phonons(self) -> tuple[str, ...]:
+        """LO or TO phonons of seen polar species that no measurement offered shows; not for free dipoles."""
+        targets = targets_of(self.results)
+        found = []
+        for row in raman_rows(self.analysis):
+            fixed = len(row.tensor.components) > 1 or len(row.tensor.polar_space) == 1
+            if row.activity.infrared and fixed and targets.get(row.label):
+                both = (f"{row.label}({LONGITUDINAL})", f"{row.label}({TRANSVERSE})")
+                found += [name for name in both if name not in targets[row.label]]
+        return tuple(found)
 
 
 def _pairs(demands: Iterable[Demand]) -> list[tuple[str, str]]:
