@@ -221,6 +221,7 @@ def test_mistakes_are_told_in_two_lines(tmp_path: Path, capsys: pytest.CaptureFi
     assert_refused(capsys, ["compare", WARM, COLD, "--strain", "80"], 2, "80 %")
     assert_refused(capsys, ["compare", WARM, COLD, "--displacement", "-1"], 2, "-1 Å")
     assert_refused(capsys, ["compare", WARM, COLD, "--child-setting", "Pnma"], 2, "Pnma")
+    assert_refused(capsys, ["compare", "-", "-"], 2, "standard input")
     assert_refused(capsys, ["compare", WARM, str(tmp_path / "missing.cif")], 3, "missing.cif")
     assert_refused(capsys, ["compare", str(empty), COLD], 3, "empty.cif")
     assert_refused(capsys, ["compare", WARM, COLD, "--output", COLD, "--force"], 2, "structure file itself")

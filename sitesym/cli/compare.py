@@ -6,6 +6,7 @@ import argparse
 from typing import Any
 
 from sitesym.cli.shared import Command, chosen_format, number, output_arguments
+from sitesym.errors import UsageError
 
 _FORMATS = ("text", "html", "json", "csv")
 
@@ -17,7 +18,7 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
     for name in ("parent", "child"):
         files.add_argument(f"--{name}-block", metavar="NAME", help=f"which structure of the {name}'s file, if several")
         files.add_argument(
-            f"--{name}-elements", metavar="SYMBOLS", type=str.split, help='for a POSCAR that names none: "Ca C O"'
+            f"--{name}-elements", metavar="SYMBOLS", type=_symbols, help='for a POSCAR that names none: "Ca C O"'
         )
     files.add_argument("--whole-cell", action="store_true", help="the files list every atom of the cell, no symmetry")
     symmetry = parser.add_argument_group("their symmetry")
@@ -30,12 +31,18 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
     output_arguments(parser, _FORMATS)
 
 
+def _symbols(text: str) -> tuple[str, ...]:
+    return tuple(text.replace(",", " ").split())
+
+
 def _run(arguments: argparse.Namespace) -> str:
     from importlib import import_module
 
     view = import_module(f"sitesym.views.compare_{chosen_format(arguments)}")
     from sitesym.comparison import compare
 
+    if arguments.file == arguments.second == "-":
+        raise UsageError("Both structures cannot come from standard input.", "Name a file for one of them.")
     parent, child = (_analysed(arguments, path, name) for path, name in _files(arguments))
     limits = {}
     if arguments.strain is not None:

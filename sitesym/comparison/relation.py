@@ -110,7 +110,9 @@ def find_relation(
     """
     copies = _copies(parent, child)
     if not copies:
-        return Refusal("contents", "the primitive cell of the child holds no whole number of those of the parent")
+        return Refusal(
+            "contents", "the atoms in the child's primitive cell are no whole multiple of those in the parent's"
+        )
     allowed = may_stand_on(parent, child)
     if len(child.atoms) > copies * len(parent.atoms):
         return Refusal("contents", "the child has more sites than the parent, counted by volume")

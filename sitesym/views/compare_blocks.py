@@ -59,7 +59,7 @@ def _fields(result: Comparison, style: Style) -> tuple[tuple[str, str], ...]:
         ]
     if any(one.molecular and one.molecular.molecules for _, one in pair):
         made += [(f"{name} units", style.plain("; ").join(units_words(one, style))) for name, one in pair]
-    return tuple((style.plain(name), text) for name, text in made)
+    return tuple((style.plain(name), text) for name, text in made if text)
 
 
 def _relation(result: Comparison) -> str:
