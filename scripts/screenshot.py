@@ -1,9 +1,11 @@
-"""Pictures of the HTML report for those who work on its looks: desktop and phone, light and dark, and as printed.
+"""Pictures of the HTML pages for those who work on their looks: desktop and phone, light and dark, and as printed.
 
     .venv/bin/python scripts/screenshot.py structures_demo/calcite.cif --output demo_output/looks
+    .venv/bin/python scripts/screenshot.py structures_demo/calcite.cif --plan
 
 Needs Chromium (`--browser` names it), pillow, and pdftoppm for the printed pages. Each structure gives
-NAME-desktop-light.png, -desktop-dark, -phone-light, -phone-dark and NAME-print-1.png, -2, ...
+NAME-desktop-light.png, -desktop-dark, -phone-light, -phone-dark and NAME-print-1.png, -2, ..., of the report or, with
+--plan, of the run sheet (NAME-plan-...).
 """
 
 from __future__ import annotations
@@ -31,29 +33,44 @@ def main() -> int:
     parser.add_argument("structures", nargs="+", type=Path)
     parser.add_argument("--output", type=Path, default=Path("demo_output/looks"))
     parser.add_argument("--browser", default="chromium")
+    parser.add_argument("--plan", action="store_true", help="the run sheet in the place of the report")
     arguments = parser.parse_args()
     if shutil.which(arguments.browser) is None:
         print(f"There is no program '{arguments.browser}': install Chromium or use --browser.", file=sys.stderr)
         return 2
     arguments.output.mkdir(parents=True, exist_ok=True)
     for structure in arguments.structures:
-        for picture in pictures(structure, arguments.output, arguments.browser):
+        name = f"{structure.stem}-plan" if arguments.plan else structure.stem
+        page = run_sheet(structure) if arguments.plan else report(structure)
+        for picture in pictures(name, page, arguments.output, arguments.browser):
             print(picture)
     return 0
 
 
-def pictures(structure: Path, folder: Path, browser: str) -> list[Path]:
+def report(structure: Path) -> str:
     import sitesym
     from sitesym.views.html import page
 
-    written = folder / f"{structure.stem}.html"
-    written.write_text(page(sitesym.analyse(sitesym.read(str(structure)))), encoding="utf-8")
+    return page(sitesym.analyse(sitesym.read(str(structure))))
+
+
+def run_sheet(structure: Path) -> str:
+    import sitesym
+    from sitesym.views.plan_html import render
+
+    analysis = sitesym.analyse(sitesym.read(str(structure)))
+    return render(sitesym.plan(analysis, curves=["001"], lasers=[532]))
+
+
+def pictures(name: str, page: str, folder: Path, browser: str) -> list[Path]:
+    written = folder / f"{name}.html"
+    written.write_text(page, encoding="utf-8")
     made = [
-        screen(written, folder / f"{structure.stem}-{device}-{scheme}.png", browser, width, number)
+        screen(written, folder / f"{name}-{device}-{scheme}.png", browser, width, number)
         for device, width in WIDTHS.items()
         for scheme, number in SCHEMES.items()
     ]
-    return made + printed(written, folder / f"{structure.stem}-print", browser)
+    return made + printed(written, folder / f"{name}-print", browser)
 
 
 def screen(written: Path, target: Path, browser: str, width: int, scheme: int) -> Path:
