@@ -117,7 +117,7 @@ def _around(wavenumber: float) -> tuple[float, float]:
 
 def _is_light(row: MoleculeRow) -> bool:
     hydrogen = sum(element in ("H", "D", "T") for element in row.free.elements)
-    return 2 * hydrogen >= len(row.free.elements)
+    return 2 * hydrogen > len(row.free.elements)
 
 
 def _by_origin(analysis: Analysis, unit: str, vibration: str, origin: str, window: tuple[float, float]) -> list[Family]:
