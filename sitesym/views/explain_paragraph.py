@@ -1,0 +1,176 @@
+"""The paragraph of an explanation that a user can paste into a draft: what was seen, and as what it is allowed."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable, Sequence
+from itertools import groupby
+from typing import TYPE_CHECKING
+
+from sitesym.bands.measurement import TECHNIQUES
+from sitesym.version import __version__
+from sitesym.views.explain_words import (
+    NAMES,
+    cause_words,
+    coincidence_sentence,
+    compound_of,
+    counted,
+    family_words,
+    has_place,
+    listed,
+    lowered_words,
+    number,
+    of,
+    typeset,
+    vibration_words,
+)
+from sitesym.views.labels import TEXT, Style
+from sitesym.views.sentences import fill, space_group_words
+
+if TYPE_CHECKING:
+    from sitesym.bands.explanation import BandResult, Explanation
+    from sitesym.bands.inventory import Family
+    from sitesym.bands.reasons import Reason
+
+_LISTED = 8
+_CLAUSE = re.compile(r": |; |, and the |, which |, so that ")
+
+
+def paragraph(explanation: Explanation, style: Style = TEXT) -> str:
+    """What was found, in sentences for a draft. Claims go no further than "allowed as" and "would need"."""
+    sentences = [_opening(explanation, style)]
+    for technique in TECHNIQUES:
+        if mine := of(explanation, technique):
+            sentences += [_placed(technique, mine, style), *_others(explanation, technique, mine, style)]
+    sentences += [coincidence_sentence(explanation), _missing_sentence(explanation)]
+    lowering = [_lowering_sentence(explanation, style)] if explanation.lowerings else []
+    plain = [style.plain(one) if k > 0 else one for k, one in enumerate(sentences[-2:], start=1) if one]
+    closing = style.plain(f"Bands were put to what symmetry allows with sitesym {__version__}.")
+    return style.plain(" ").join(filter(None, [*sentences[:-2], *plain, *lowering, closing]))
+
+
+def _opening(explanation: Explanation, style: Style) -> str:
+    analysis = explanation.analysis
+    totals = analysis.totals
+    both = f", {totals.infrared_and_raman} of them in both." if totals.infrared_and_raman else "."
+    return fill(
+        style,
+        f"For {{formula}} in space group {{group}}, factor group {{factor}}, symmetry allows {_number(totals.raman)} "
+        f"fundamentals in Raman and {_number(totals.infrared)} in infrared{both}",
+        formula=style.formula(compound_of(explanation)),
+        group=space_group_words(analysis, style),
+        factor=style.schoenflies(analysis.factor_group.schoenflies),
+    )
+
+
+def _number(count: int) -> str:
+    return str(count) if count else "no"
+
+
+def _placed(technique: str, mine: Sequence[BandResult], style: Style) -> str:
+    """`Of the 6 Raman bands measured, 5 are allowed as fundamentals or components of them: ...`."""
+    placed = [one for one in mine if has_place(one)]
+    name = NAMES[technique]
+    if not placed:
+        return style.plain(f"None of the {counted(len(mine), f'{name} band')} measured is first of all a fundamental.")
+    share = f"{len(placed)} are" if len(placed) > 1 else "one is"
+    opening = (
+        f"{'The one' if len(mine) == 1 else f'All {len(mine)}'} {name} {_bands(len(mine))} measured "
+        f"{'is' if len(mine) == 1 else 'are'}"
+        if len(placed) == len(mine)
+        else f"Of the {len(mine)} {name} bands measured, {share}"
+    )
+    return (
+        style.plain(f"{opening} allowed as fundamentals or components of them: ")
+        + _families(placed, style) + style.plain(" cm⁻¹.")
+    )  # fmt: skip
+
+
+def _bands(count: int) -> str:
+    return "band" if count == 1 else "bands"
+
+
+def _families(placed: Sequence[BandResult], style: Style) -> str:
+    """`CO₃ ν4 711, ν1 1086; external modes 156 and 281`."""
+    groups: dict[str, list[str]] = {}
+    by_family: dict[Family, list[BandResult]] = {}
+    for one in placed:
+        assert one.placed.family is not None
+        by_family.setdefault(one.placed.family, []).append(one)
+    for family, members in by_family.items():
+        through = all(one.reasons[0].cause == "site_activation" for one in members)
+        values = style.plain(listed([number(one.band) for one in members]))
+        words = f"{vibration_words(family, style)} {values}".strip()
+        words += style.plain(" (through the site)") if through else ""
+        head = family_words(family, style).removesuffix(vibration_words(family, style)).strip()
+        groups.setdefault(head, []).append(words)
+    return style.plain("; ").join(f"{head} {style.plain(', ').join(parts)}" for head, parts in groups.items())
+
+
+def _others(explanation: Explanation, technique: str, mine: Sequence[BandResult], style: Style) -> list[str]:
+    others = [one for one in mine if not has_place(one)]
+    if not others:
+        return []
+    clauses = []
+    for clause, members in _same_clause(others[:_LISTED]):
+        values = listed([number(one.band) for one in members])
+        verb = clause if len(members) == 1 else _plural(clause)
+        clauses.append(style.plain(f"{values} cm⁻¹ ") + typeset(verb, explanation, style))
+    more = f"; for {len(others) - _LISTED} more see the table" if len(others) > _LISTED else ""
+    whole = len(others) == len(mine)
+    opening = "Of them, " if whole else "Of the rest, "
+    return [style.plain(opening) + style.plain("; ").join(clauses) + style.plain(f"{more}.")]
+
+
+def _same_clause(others: Sequence[BandResult]) -> Iterable[tuple[str, list[BandResult]]]:
+    for clause, members in groupby(others, key=lambda one: _clause(one.reasons[0])):
+        yield clause, list(members)
+
+
+def _clause(reason: Reason) -> str:
+    """The main clause of an argument, as the predicate of a band."""
+    main = _CLAUSE.split(reason.argument)[0]
+    if reason.cause == "unexplained":
+        return "remains unexplained"
+    if reason.cause == "leakage":
+        return "is forbidden in its geometry and may be leakage"
+    if reason.cause == "symmetry_lowering":
+        return "would need a lower symmetry"
+    if reason.cause == "disorder":
+        return "may come from disorder"
+    if main.startswith("allowed"):
+        return f"is {main}"
+    if main.startswith("near "):
+        return f"lies {main}"
+    return main if main.startswith("would") else f"may be a case of {cause_words(reason)}"
+
+
+def _plural(clause: str) -> str:
+    words = {"is ": "are ", "remains ": "remain ", "lies ": "lie "}
+    return next((many + clause.removeprefix(one) for one, many in words.items() if clause.startswith(one)), clause)
+
+
+def _missing_sentence(explanation: Explanation) -> str:
+    counts = [
+        (NAMES[technique], sum(one.allowed - one.seen for one in explanation.missing if one.technique == technique))
+        for technique in TECHNIQUES
+    ]
+    words = [f"{count} in {name}" for name, count in counts if count]
+    return f"Of the fundamentals allowed, {listed(words)} were not seen." if words else ""
+
+
+def _lowering_sentence(explanation: Explanation, style: Style) -> str:
+    """The highest symmetries that explain most; several of one order stand side by side."""
+    best = explanation.lowerings[0]
+    equal = [
+        one for one in explanation.lowerings
+        if (len(one.fails), one.subgroup.order) == (len(best.fails), best.subgroup.order)
+    ]  # fmt: skip
+    count = len(best.explains)
+    what = "the one band left over" if count == 1 else f"{count} of the bands left over"
+    return fill(
+        style,
+        f"A loss of symmetry would give {what} a place among the fundamentals; the highest symmetry that would is "
+        f"{{groups}}, order {best.subgroup.order}.",
+        groups=style.plain(" or ").join(lowered_words(one, explanation, style) for one in equal),
+    )
