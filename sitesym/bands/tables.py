@@ -106,13 +106,16 @@ def _named(line: str) -> list[Column]:
 
 def _header(head: Sequence[Line]) -> tuple[str, str, bool]:
     """The last line of the heading that names columns, a line of units below it, and whether it is a comment."""
-    units = ""
-    for _, line in reversed(head):
-        columns = _named(line)
-        if is_header(columns) and not (_are_units(columns) and not units and len(head) > 1):
-            return re.sub(r"^\s*#+\s*", "", line), units, _is_comment(line)
-        units = line if _are_units(columns) else ""
-    return units, "", False
+    for wanted in (False, True):
+        units = ""
+        for _, line in reversed([one for one in head if _is_comment(one[1]) == wanted]):
+            columns = _named(line)
+            if is_header(columns) and not (_are_units(columns) and not units and len(head) > 1):
+                return re.sub(r"^\s*#+\s*", "", line), units, wanted
+            units = line if _are_units(columns) else ""
+        if units:
+            return units, "", wanted
+    return "", "", False
 
 
 def _columns(header: str, units: str, separator: str) -> tuple[Column, ...]:
@@ -182,7 +185,7 @@ def _cells(line: str, separator: str) -> tuple[str, ...]:
         cells = next(csv.reader([line], delimiter=separator, skipinitialspace=True))
     except (csv.Error, StopIteration):
         cells = line.split(separator)
-    stripped = [cell.strip() for cell in cells]
+    stripped = [re.sub(r"^'(?=[=+@-])", "", cell.strip()) for cell in cells]  # text that a spreadsheet must not run
     while len(stripped) > 1 and not stripped[-1]:
         stripped.pop()
     return tuple(stripped)
