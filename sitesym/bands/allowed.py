@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 from sitesym.bands.assignment import Placed
 from sitesym.bands.inventory import Family
@@ -11,6 +12,9 @@ from sitesym.bands.reasons import Reason
 
 _SITE_REACH, _FIELD_REACH = 110.0, 45.0
 """cm⁻¹ over which the score of a splitting halves: sites split by up to a hundred, units couple by some tens."""
+
+_NAMED = 0.5
+"""Weight of the splitting for the component that keeps the name of the fundamental: which one does is convention."""
 
 _BY_COUNT = 0.62
 """Weight of a place that is had by count alone, with no wavenumber to compare."""
@@ -25,15 +29,31 @@ def reasons_of_place(placed: Placed, siblings: Sequence[Band]) -> list[Reason]:
     technique = band.technique
     labels = tuple(one.label for one in family.active(technique))
     if not family.is_internal:
-        argument = (
-            f"allowed as one of {family.capacity(technique)} {family.vibration} of the {family.unit} that "
-            f"{_WORDS[technique]} can show; symmetry fixes no wavenumbers"
-        )
-        score = _BY_COUNT * _fit(placed)
-        return [Reason("fundamental", score, argument, (), labels, "polarized spectra tell the species")]
-    if len(siblings) == 1 or band == _first(family, siblings):
+        return _by_count(placed, family, labels)
+    if len(siblings) == 1:
         return [_single(placed, family, labels)]
-    return _split(placed, family, labels, siblings)
+    split = _split(placed, family, labels, siblings)
+    if band != _first(family, siblings):
+        return split
+    return [_single(placed, family, labels), *(replace(one, score=_NAMED * one.score) for one in split)]
+
+
+def _by_count(placed: Placed, family: Family, labels: tuple[str, ...]) -> list[Reason]:
+    """External modes and modes of nets: they have a place by number only."""
+    technique = placed.band.technique
+    score = _BY_COUNT * _fit(placed)
+    argument = (
+        f"allowed as one of {family.capacity(technique)} {family.vibration} of the {family.unit} that "
+        f"{_WORDS[technique]} can show; symmetry fixes no wavenumbers"
+    )
+    reasons = [Reason("fundamental", score, argument, (), labels, "polarized spectra tell the species")]
+    if family.unit == "lattice" and family.capacity(technique) > 3:
+        coupled = (
+            "the equivalent units move with and against each other: each of their external motions gives several bands"
+        )
+        test = "polarized spectra tell the components; they draw together in a diluted crystal"
+        reasons.append(Reason("correlation_splitting", 0.5 * score, coupled, (), labels, test))
+    return reasons
 
 
 def _fit(placed: Placed) -> float:

@@ -97,6 +97,13 @@ def explain(
     )
 
 
+_BESIDE_PLACE = 0.6
+"""Weight of companions and of lines of the room for a band that has a place of its own."""
+
+_BEYOND = 0.5
+"""Weight of a place that a band would have, were it not taken by others."""
+
+
 def _reasons(
     analysis: Analysis, families: Sequence[Family], placed: Sequence[Placed], one: Placed,
     lower: Sequence[Lowering], suspects: Sequence[Suspect], laser: float | None,
@@ -104,38 +111,60 @@ def _reasons(
     band = one.band
     others = [other for other in placed if other is not one]
     parents = parents_of(others)
+    beside = [
+        *room_reasons(analysis, band, [other.band for other in placed], laser),
+        *longitudinal_reasons(band, others),
+    ]
     found = [
         *resonance_reasons(analysis, band, others, parents),
         *leakage_reasons(analysis, band, families, one.family),
-        *room_reasons(analysis, band, [other.band for other in placed], laser),
-        *phase_reasons(band, suspects),
-        *longitudinal_reasons(band, others),
         *isotope_reasons(band, others),
+        *phase_reasons(band, suspects),
     ]
     if one.family is not None:
-        mine = [other.band for other in placed if other.family is one.family and other.band.technique == band.technique]
-        return ranked([*_of_place(analysis, one, mine, others), *found])
+        own = _of_place(analysis, one, others)
+        return ranked([*own, *found, *_weighed(beside, _BESIDE_PLACE)])
     found += [
         *level_reasons(analysis, band, parents),
         *disorder_reasons(analysis, band, families),
-        *lowering_reasons(band, lower, families),
+        *lowering_reasons(analysis, band, lower, families),
+        *_beyond(one, families, others),
         unexplained(band),
     ]
-    return ranked(found)
+    return ranked([*found, *beside])
 
 
-def _of_place(analysis: Analysis, one: Placed, mine: Sequence[Band], others: Sequence[Placed]) -> list[Reason]:
+def _weighed(reasons: Sequence[Reason], weight: float) -> list[Reason]:
+    return [replace(reason, score=weight * reason.score) for reason in reasons]
+
+
+def _siblings(family: Family | None, one: Placed, others: Sequence[Placed]) -> list[Band]:
+    """Bands of a family in the technique of one band, itself included."""
+    return [
+        *(other.band for other in others if other.family is family and other.band.technique == one.band.technique),
+        one.band,
+    ]
+
+
+def _of_place(analysis: Analysis, one: Placed, others: Sequence[Placed]) -> list[Reason]:
     """Reasons of the band's own place and of places that cost little more; less where polarization is against them."""
-    found = reasons_of_place(one, mine)
+    found = reasons_of_place(one, _siblings(one.family, one, others))
     for other in one.alternatives:
         moved = replace(one, family=other, cost=one.cost + 1.0)
-        siblings = [
-            placed.band for placed in others if placed.family is other and placed.band.technique == one.band.technique
-        ]
-        reasons = reasons_of_place(moved, [*siblings, one.band])
-        found += [replace(reason, score=0.6 * reason.score) for reason in reasons]
+        found += _weighed(reasons_of_place(moved, _siblings(other, one, others)), _BESIDE_PLACE)
     shown = shown_species(analysis, one.band)
     return [
         reason if shown is None or shown & set(reason.species) else replace(reason, score=0.3 * reason.score)
         for reason in found
     ]
+
+
+def _beyond(one: Placed, families: Sequence[Family], others: Sequence[Placed]) -> list[Reason]:
+    """Families in whose reach a band lies that has no place in them: one of their bands may be misassigned instead."""
+    found = []
+    for family in families:
+        low, high = family.window
+        if low <= one.band.wavenumber <= high and family.capacity(one.band.technique):
+            moved = replace(one, family=family, cost=1.5)
+            found += _weighed(reasons_of_place(moved, _siblings(family, one, others)), _BEYOND)
+    return found

@@ -44,6 +44,9 @@ class Feature:
     strongest: tuple[float, ...]
 
 
+_WITHOUT_INVERSION = 0.7
+"""Weight of a loss of symmetry where there is no inversion to lose: longitudinal companions come first."""
+
 _STRENGTHS = {"strong": 1.0, "medium": 0.75, "weak": 0.5}
 _SUBSTANCES = {"silicon": "Si", "diamond": "C"}
 """Features that are the sample itself where it has this formula."""
@@ -79,13 +82,18 @@ def _place(one: dict[str, Any], laser: float | None) -> tuple[float, float] | No
     return 1e7 / laser - 1e7 / wavelength, 1e7 * float(one["window"]) / wavelength**2
 
 
+def _is_sample(one: Feature, analysis: Analysis) -> bool:
+    """Whether a feature is the sample itself."""
+    return any(name in one.name and formula == analysis.formula for name, formula in _SUBSTANCES.items())
+
+
 def room_reasons(analysis: Analysis, band: Band, bands: Sequence[Band], laser: float | None = None) -> list[Reason]:
     """Lines of the instrument, the substrate and the air near a band. `bands` are all that were measured."""
     reasons = []
     for one in features(laser):
         window = one.window + band.uncertainty
         off = abs(band.wavenumber - one.wavenumber)
-        if one.technique != band.technique or off > window or _SUBSTANCES.get(one.name) == analysis.formula:
+        if one.technique != band.technique or off > window or _is_sample(one, analysis):
             continue
         believed = one.strength == 1.0 or any(
             abs(other.wavenumber - place) <= 5 + other.uncertainty and other.technique == band.technique
@@ -100,17 +108,20 @@ def room_reasons(analysis: Analysis, band: Band, bands: Sequence[Band], laser: f
 
 
 def disorder_reasons(analysis: Analysis, band: Band, families: Sequence[Family]) -> list[Reason]:
-    """Partial or mixed occupancy lets fundamentals show that the average structure forbids."""
-    if analysis.is_ordered:
-        return []
+    """Disorder lets fundamentals show that the average structure forbids; it may be in the file, or be hidden."""
+    test = "the band is broad and does not sharpen on cooling"
     inside = [family.name for family in families if family.window[0] <= band.wavenumber <= family.window[1]]
-    if not inside:
-        return []
+    if analysis.is_ordered or not inside:
+        argument = (
+            "atoms displaced at random, strain or defects would relax the selection rules of the average structure; "
+            "nothing in the file says that they are there"
+        )
+        return [Reason("disorder", 0.07, argument, (), (), test)]
     argument = (
         "the structure is an average over disordered sites; locally the symmetry is lower, so that "
         f"{', '.join(inside[:3])} may show forbidden components, usually broad"
     )
-    return [Reason("disorder", 0.4, argument, (), (), "the band is broad and does not sharpen on cooling")]
+    return [Reason("disorder", 0.55, argument, (), (), test)]
 
 
 def phase_reasons(band: Band, suspects: Sequence[Suspect]) -> list[Reason]:
@@ -125,11 +136,13 @@ def phase_reasons(band: Band, suspects: Sequence[Suspect]) -> list[Reason]:
                 continue
             argument = f"allowed as {family.name} of {suspect.name}, near {family.wavenumber:g} cm⁻¹"
             test = f"other bands of {suspect.name} must be there too; its share varies from place to place"
-            reasons.append(Reason("second_phase", 0.45 * (1 - off / 4), argument, (), (), test))
+            reasons.append(Reason("second_phase", 0.6 * (1 - off / 4), argument, (), (), test))
     return reasons
 
 
-def lowering_reasons(band: Band, lowerings: Sequence[Lowering], families: Sequence[Family]) -> list[Reason]:
+def lowering_reasons(
+    analysis: Analysis, band: Band, lowerings: Sequence[Lowering], families: Sequence[Family]
+) -> list[Reason]:
     """Loss of the assumed symmetry, for bands that the highest such groups would give a place."""
     reasons = []
     name, closeness = _forbidden_here(band, families)
@@ -142,6 +155,7 @@ def lowering_reasons(band: Band, lowerings: Sequence[Lowering], families: Sequen
             + (f"; {name} is forbidden in this technique and lies here" if name else "")
         )
         score = (0.34 + 0.08 * min(len(one.explains) - 1, 4) + 0.24 * closeness) / (1 + 0.5 * rank)
+        score *= 1.0 if analysis.factor_group.has_inversion else _WITHOUT_INVERSION
         test = "further bands must split or appear; diffraction or second-harmonic generation can confirm it"
         reasons.append(Reason("symmetry_lowering", score, argument, (), (), test))
     return reasons
