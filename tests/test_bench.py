@@ -136,6 +136,17 @@ def test_lamp_lines_lie_in_the_span_and_where_the_lamp_has_them(line: str) -> No
         assert all(one.source == "neon" for one in bench.lamps)
 
 
+def test_lamp_lines_are_the_strongest_of_their_part_of_the_span() -> None:
+    """In each 500 cm-1 no line of neon is stronger than the one that is named."""
+    order = ["strong", "medium", "weak"]
+    (neon,) = [lamp for lamp in TABLE["lamp"] if lamp["name"] == "neon"]
+    bench = laser_bench("532")
+    for one in bench.lamps:
+        shifts = [(shift_of(bench.laser, air), strength) for air, strength in neon["lines"]]
+        near = [strength for shift, strength in shifts if int(shift // 500) == int(one.shift // 500) and shift >= 10]
+        assert one.strength == min(near, key=order.index)
+
+
 def test_neon_line_at_540_nm_with_a_green_laser() -> None:
     """540.056 nm lies 276 to 281 cm-1 from a 532 nm laser, as that is 532.1 or 532.0 (common practice)."""
     assert shift_of(read_laser("532.05"), 540.056) == pytest.approx(279, abs=2)

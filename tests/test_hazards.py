@@ -119,6 +119,22 @@ def test_molecules_without_such_groups_are_not_called_explosive(name: str) -> No
     assert "explosive" not in kinds(in_box(molecule(name)))
 
 
+def test_deuterium_counts_as_hydrogen() -> None:
+    peroxide = in_box(molecule("H2O2"))
+    heavy = tuple(replace(one, occupants=(Occupant("D"),)) if one.element == "H" else one for one in peroxide.sites)
+    assert "H2O2" in kinds(replace(peroxide, sites=heavy))["oxidizing"]
+
+
+def test_saturated_nitrogen_chain_is_no_diazo_group() -> None:
+    """CH3-NH-NH2: the end nitrogen of a diazo group has one neighbour, here it has three."""
+    atoms = [
+        ("C", (4.0, 4.0, 4.0)), ("N", (5.46, 4.0, 4.0)), ("N", (5.95, 5.35, 4.0)), ("H", (3.64, 5.03, 4.0)),
+        ("H", (3.64, 3.5, 4.9)), ("H", (3.64, 3.5, 3.1)), ("H", (5.8, 3.5, 4.8)), ("H", (6.97, 5.3, 4.0)),
+        ("H", (5.6, 5.8, 3.2)),
+    ]  # fmt: skip
+    assert "explosive" not in kinds(boxed(*atoms))
+
+
 def test_three_nitro_groups_are_more_than_one() -> None:
     """Three molecules with one group each are not one with three: CH(NO2)3 is built on one carbon atom."""
     one = molecule("CH3NO2")
@@ -128,19 +144,24 @@ def test_three_nitro_groups_are_more_than_one() -> None:
         other.translate([shift, 0, 0])
         three += other
     assert kinds(in_box(three))["explosive"] == {"nitro"}
+    assert "nitro, three or more" in kinds(boxed(*nitro_groups_on_carbon(3)))["explosive"]
+    assert kinds(boxed(*nitro_groups_on_carbon(2)))["explosive"] == {"nitro"}
+
+
+def nitro_groups_on_carbon(count: int) -> list:
+    """One carbon atom with so many nitro groups and a hydrogen atom."""
     carbon = np.array([7.0, 7.0, 7.0])
-    atoms = [("C", carbon), ("H", carbon + 1.09 * np.array([0, 0, 1.0]))]
-    for ray, across in (
+    atoms = [("C", tuple(carbon)), ("H", (7.0, 7.0, 8.09))]
+    rays = [
         ((0.94, 0, -0.33), (0, 1, 0)),
         ((-0.47, 0.81, -0.33), (0.87, 0.5, 0)),
         ((-0.47, -0.81, -0.33), (-0.87, 0.5, 0)),
-    ):
+    ]
+    for ray, across in rays[:count]:
         nitrogen = carbon + 1.5 * np.array(ray)
-        atoms += [
-            ("N", nitrogen),
-            *(("O", nitrogen + 0.57 * np.array(ray) + s * 1.08 * np.array(across)) for s in (1, -1)),
-        ]
-    assert "nitro, three or more" in kinds(boxed(*((name, tuple(place)) for name, place in atoms)))["explosive"]
+        atoms.append(("N", tuple(nitrogen)))
+        atoms += [("O", tuple(nitrogen + 0.57 * np.array(ray) + side * 1.08 * np.array(across))) for side in (1, -1)]
+    return atoms
 
 
 @pytest.mark.parametrize(

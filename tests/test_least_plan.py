@@ -171,6 +171,7 @@ def test_polar_crystal_on_one_face_gets_a_second_face_for_the_other_phonons() ->
     seen = {one.name for measurement in plan.measurements for one in measurement.result.allowed}
     assert seen == {"A1(LO)", "E(TO)"}
     assert ("A1(LO)", "A1(TO)") not in plan.separated
+    assert plan.other_phonons == ("A1(TO)", "E(LO)")
     assert plan.further is not None
     assert "A1(TO)" in {demand.first for demand in plan.further.meets}
 
