@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from fractions import Fraction
-from math import lcm
+from math import lcm, sqrt
 
 import numpy as np
 
@@ -80,10 +80,12 @@ def _simple(value: float) -> str | None:
     if abs(value - 1) < 1e-9:
         return ""
     for root, symbol in ((1.0, ""), (2.0, "√2 "), (3.0, "√3 "), (6.0, "√6 ")):
-        near = Fraction(value / np.sqrt(root)).limit_denominator(12)
-        if near and abs(value / np.sqrt(root) - near) < 1e-9:
-            fraction = f"{near.numerator}" if near.denominator == 1 else f"({near.numerator}/{near.denominator})"
-            return symbol if near == 1 else f"{fraction} {symbol}"
+        part = value / sqrt(root)
+        for below in range(1, 13):
+            above = round(part * below)
+            if above and abs(part - above / below) < 1e-9:
+                fraction = f"{above}" if below == 1 else f"({above}/{below})"
+                return symbol if above == below else f"{fraction} {symbol}"
     return None
 
 

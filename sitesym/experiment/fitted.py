@@ -95,7 +95,7 @@ class CurveFit:
 
     @property
     def offset(self) -> float:
-        """Degrees from -90 to 90, to be taken from the angles of the data; light has no arrow, so 180° more is the same."""
+        """Degrees, -90 to 90, to be taken from the angles of the data; 180° more is the same, as light has no arrow."""
         return self.value("offset").value
 
     @property
