@@ -184,7 +184,7 @@ def _band_row(result: BandResult, alone: bool, style: Style) -> BandRow:
     doubt = next((one for one in result.reasons[1:] if one.cause != first.cause and _is_worth(one, first)), None)
     return BandRow(
         number(band), f"{band.uncertainty:.2g}", style.plain(NAMES[band.technique]),
-        _place(family, alone, style) if family else "", style.plain(_reason_words(first)),
+        _place(family, alone, style) if family else "", style.plain(reason_words(first)),
         _species(first, style), style.plain(cause_words(doubt)) if doubt else "",
         style.plain(note), not has_place(result),
     )  # fmt: skip
@@ -203,7 +203,7 @@ def _species(reason: Reason, style: Style) -> str:
     return style.plain(", ").join(map(style.species, reason.species[:_NAMED])) + more
 
 
-def _reason_words(reason: Reason) -> str:
+def reason_words(reason: Reason) -> str:
     """The cause; of levels also which."""
     level = re.match(r"allowed as (?:the difference )?(\S+(?: [+−] \S+)?)(?: of |:)", reason.argument)
     if reason.cause in ("overtone", "combination") and level:
