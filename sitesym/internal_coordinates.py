@@ -58,9 +58,11 @@ def out_of_plane_bends(positions: Floats, near: list[list[int]]) -> Floats:
 def torsions(positions: Floats, bonds: Bonds, near: list[list[int]]) -> Floats:
     """(m, 3n) displacement vectors of the dihedral angles about every bond, added up for each bond.
 
-    Single dihedral angles about one bond differ from their sum by bends only.
+    Single dihedral angles about one bond differ from their sum by bends only. Where an atom of the bond has all its
+    bonds in one line, the dihedral angle spans the straight chain up to the next atom that bends away (allene).
     """
-    ends = [(j, k, _off_axis(positions, near, j, k), _off_axis(positions, near, k, j)) for j, k in bonds]
+    axes = dict.fromkeys(_chain(positions, near, j, k) for j, k in bonds)
+    ends = [(j, k, _off_axis(positions, near, j, k), _off_axis(positions, near, k, j)) for j, k in axes]
     turning = [one for one in ends if one[2] and one[3]]
     levers = [(row, i, j, k, -len(after)) for row, (j, k, before, after) in enumerate(turning) for i in before]
     levers += [(row, m, k, j, -len(before)) for row, (j, k, before, after) in enumerate(turning) for m in after]
@@ -131,6 +133,21 @@ def _cross(u: Floats, v: Floats) -> Floats:
     """The cross product of two single vectors, without the overhead of arrays of them."""
     (a, b, c), (d, e, f) = u.tolist(), v.tolist()
     return np.array([b * f - c * e, c * d - a * f, a * e - b * d])
+
+
+def _chain(positions: Floats, near: list[list[int]], j: int, k: int) -> tuple[int, int]:
+    """The ends of the straight chain of bonds that holds the bond of j and k, the lower number first."""
+    first, last = _end_of_chain(positions, near, k, j), _end_of_chain(positions, near, j, k)
+    return min(first, last), max(first, last)
+
+
+def _end_of_chain(positions: Floats, near: list[list[int]], start: int, end: int) -> int:
+    for _ in near:
+        onward = [atom for atom in near[end] if atom != start]
+        if len(onward) != 1 or _off_axis(positions, near, end, start):
+            break
+        start, end = end, onward[0]
+    return end
 
 
 def _off_axis(positions: Floats, near: list[list[int]], apex: int, other: int) -> list[int]:

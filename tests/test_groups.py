@@ -177,3 +177,12 @@ def test_a_fractional_multiplicity_is_refused() -> None:
     group = PointGroup.of(GROUPS["C3v"])
     with pytest.raises(InconsistencyError, match="no count"):
         reduce_characters(group.species, np.arange(6.0))
+
+
+def test_axes_on_a_rounding_boundary_are_one_axis() -> None:
+    """Operations orthogonal to 1e-6 only, about an axis whose components end in a five at the fourth decimal."""
+    axis = np.array([0.3205, 0.5125, 0.7965])
+    for n in (3, 5, 6, 8):
+        matrices = np.array([turn(tuple(axis), 2 * np.pi * k / n) for k in range(n)])
+        noise = np.random.default_rng(n).normal(0, 1e-8, matrices.shape)
+        assert PointGroup.of(matrices + noise).schoenflies == f"C{n}"

@@ -56,7 +56,11 @@ def leaks(
             continue
         best = _strongest(tensors)
         found.append(
-            Leak(row.label, _tilted(tensors, geometry, tilt) / best, _coned(tensors, geometry, aperture, index) / best)
+            Leak(
+                row.label,
+                max(0.0, _tilted(tensors, geometry, tilt) / best),
+                max(0.0, _coned(tensors, geometry, aperture, index) / best),
+            )
         )
     return tuple(found)
 

@@ -49,7 +49,7 @@ def indices(text: str) -> list[int]:
     parts = re.split(r"[\s,]+", text.strip()) if re.search(r"[\s,]", text.strip()) else re.findall(r"[-+]?\d", text)
     if len(parts) not in (3, 4) or not all(re.fullmatch(_INDEX, part) for part in parts):
         raise UsageError(f"'{text}' is no set of indices.", "Write three whole numbers, such as 110 or 1 -1 0.")
-    if len(parts) == 3 and "".join(parts) != re.sub(r"[\s,]", "", text):
+    if "".join(parts) != re.sub(r"[\s,]", "", text):
         raise UsageError(f"'{text}' is no set of indices.", "Write three whole numbers, such as 110 or 1 -1 0.")
     numbers = [int(part) for part in parts]
     if not any(numbers):
@@ -61,7 +61,7 @@ def lattice_direction(text: str, lattice: Floats) -> Direction:
     """The direction [uvw], or [uvtw] of a hexagonal lattice (Weber indices), for rows a, b, c of `lattice`."""
     numbers = indices(text)
     if len(numbers) == 4:
-        _check_bravais(numbers, text)
+        _check_bravais(numbers, text, lattice)
         u, v, t, w = numbers
         three = np.array([u - t, v - t, w], dtype=float)
     else:
@@ -73,14 +73,20 @@ def face_normal(text: str, lattice: Floats) -> Direction:
     """The outward normal of the face (hkl), or (hkil) of a hexagonal lattice, for rows a, b, c of `lattice`."""
     numbers = indices(text)
     if len(numbers) == 4:
-        _check_bravais(numbers, text)
+        _check_bravais(numbers, text, lattice)
     three = np.array([numbers[0], numbers[1], numbers[-1]], dtype=float)
     return Direction(f"({format_indices(numbers)})", _unit(np.linalg.inv(lattice) @ three))
 
 
-def _check_bravais(numbers: list[int], text: str) -> None:
+def _check_bravais(numbers: list[int], text: str, lattice: Floats) -> None:
     if numbers[0] + numbers[1] + numbers[2] != 0:
         raise UsageError(f"In '{text}' the first three of four indices do not add up to 0.", "Correct the third one.")
+    a, b, c = lattice
+    hexagonal = abs(a @ b + a @ a / 2) < 1e-3 * (a @ a) and abs(a @ a - b @ b) < 1e-3 * (a @ a)
+    if not hexagonal or abs(a @ c) + abs(b @ c) > 1e-3 * (c @ c):
+        raise UsageError(
+            f"'{text}' has four indices, which are for hexagonal axes only.", "Give three indices for this crystal."
+        )
 
 
 def parse_direction(text: str, lattice: Floats) -> Direction:

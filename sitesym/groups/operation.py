@@ -39,7 +39,7 @@ def angles(rotations: Floats) -> Floats:
 
 
 def axis(rotation: Floats) -> Floats:
-    """Unit axis of one proper rotation other than the identity; the first non-zero component is positive."""
+    """Unit axis of one proper rotation other than the identity; its last component that is not zero is positive."""
     symmetric = rotation + rotation.T - (np.trace(rotation) - 1) * np.eye(3)
     column = symmetric[:, np.argmax(np.diag(symmetric))]
     return upward(column / np.linalg.norm(column))

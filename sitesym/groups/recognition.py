@@ -66,7 +66,7 @@ def recognise(elements: Elements) -> tuple[Kind, Floats | None]:
     proper_order = int(elements.proper.sum())
     improper = bool((~elements.proper).any())
     inverted = bool((~elements.proper & (elements.orders == 1)).any())
-    if len(_axes_of_order_above_two(elements)) > 1:
+    if _has_several_axes_of_order_above_two(elements):
         return Kind(_polyhedral_family(proper_order, improper, inverted)), None
     if not (elements.orders > 1).any():
         return (Kind(Family.S2N, 1) if inverted else Kind(Family.CN, 1)), None
@@ -76,9 +76,9 @@ def recognise(elements: Elements) -> tuple[Kind, Floats | None]:
     return Kind(_axial_family(elements, main, dihedral, improper), n), main
 
 
-def _axes_of_order_above_two(elements: Elements) -> Floats:
+def _has_several_axes_of_order_above_two(elements: Elements) -> bool:
     high = elements.axes[elements.proper & (elements.orders > 2)]
-    return np.unique(np.round(high, 3), axis=0)
+    return bool(len(high)) and bool((np.abs(high @ high[0]) < 1 - PARALLEL).any())
 
 
 def _polyhedral_family(proper_order: int, improper: bool, inverted: bool) -> Family:
