@@ -115,12 +115,12 @@ def _check(wavenumbers: Floats, axis: Axis) -> None:
     if top < _SMALLEST_TOP:
         raise ReadError(
             f"{axis.source} ends at {top:g} cm⁻¹, where no crystal has fundamentals: its axis may be in another unit.",
-            f"Say which: {', '.join(UNITS)} in the header or with --unit" + _laser_hint(axis),
+            f"Say which: {', '.join(UNITS)} in the header or with --axis-unit" + _laser_hint(axis),
         )
     if top > _HIGHEST:
         raise ReadError(
             f"{axis.source} reaches {top:.6g} cm⁻¹, far above all fundamentals: its axis may be in another unit.",
-            f"Say which: {', '.join(UNITS)} in the header or with --unit" + _laser_hint(axis),
+            f"Say which: {', '.join(UNITS)} in the header or with --axis-unit" + _laser_hint(axis),
         )
 
 

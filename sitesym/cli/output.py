@@ -9,15 +9,25 @@ import sys
 
 from sitesym.errors import UsageError
 
+_INPUTS = ("file", "second", "raman", "infrared", "bands", "suspect", "pins", "wavenumbers", "fit")
+"""Arguments that name files to be read, one or several each."""
+
 
 def check_output(arguments: argparse.Namespace) -> None:
     """Refuse to overwrite, before anything is computed."""
-    target = arguments.output
+    check_target(arguments.output, "--output", arguments)
+
+
+def check_target(target: str | None, option: str, arguments: argparse.Namespace) -> None:
+    """Refuse to overwrite what `option` names: never a file that is read, others only with --force."""
     if not target or not os.path.exists(target):
         return
-    sources = (arguments.file, getattr(arguments, "second", None))
-    if any(source and os.path.exists(source) and os.path.samefile(source, target) for source in sources):
-        raise UsageError(f"The output '{target}' is the structure file itself.", "Choose another name for --output.")
+    for name in _INPUTS:
+        given = getattr(arguments, name, None) or ()
+        sources = (given,) if isinstance(given, str) else given
+        if any(os.path.exists(source) and os.path.samefile(source, target) for source in sources):
+            what = "the structure file itself" if name in ("file", "second") else "a file that is to be read"
+            raise UsageError(f"The output '{target}' is {what}.", f"Choose another name for {option}.")
     if not arguments.force:
         raise UsageError(f"The file '{target}' exists.", "Choose another name, or add --force to overwrite it.")
 
@@ -27,13 +37,17 @@ def write(text: str, arguments: argparse.Namespace) -> None:
     if not arguments.output:
         _print(text)
         return
-    mode = "w" if arguments.force else "x"
+    write_file(text, arguments.output, "--output", force=arguments.force)
+
+
+def write_file(text: str, target: str, option: str, *, force: bool) -> None:
+    """Write a file that `option` names; an existing one only by force."""
     try:
-        with open(arguments.output, mode, encoding="utf-8", errors="backslashreplace", newline="\n") as stream:
+        with open(target, "w" if force else "x", encoding="utf-8", errors="backslashreplace", newline="\n") as stream:
             stream.write(text)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
-        raise UsageError(f"Cannot write '{arguments.output}': {reason}.", "Choose another --output.") from error
+        raise UsageError(f"Cannot write '{target}': {reason}.", f"Choose another {option}.") from error
 
 
 def _print(text: str) -> None:
