@@ -3,6 +3,7 @@
 import sitesym
 structure = sitesym.read("calcite.cif")
 analysis = sitesym.analyse(structure)
+explanation = sitesym.explain(analysis, sitesym.read_bands("raman.csv", "raman"))
 """
 
 from __future__ import annotations
@@ -13,6 +14,9 @@ from sitesym.version import __version__
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, analyse
+    from sitesym.bands.explanation import Explanation, explain
+    from sitesym.bands.measurement import Band
+    from sitesym.bands.reading import read_bands
     from sitesym.bonding import BondRules
     from sitesym.errors import InconsistencyError, NotAStructureError, ReadError, SitesymError, UsageError
     from sitesym.molecule_analysis import MoleculeAnalysis, analyse_molecule, compare_molecules
@@ -22,6 +26,10 @@ if TYPE_CHECKING:
 _HOMES = {
     "Analysis": "sitesym.analysis",
     "analyse": "sitesym.analysis",
+    "Band": "sitesym.bands.measurement",
+    "Explanation": "sitesym.bands.explanation",
+    "explain": "sitesym.bands.explanation",
+    "read_bands": "sitesym.bands.reading",
     "BondRules": "sitesym.bonding",
     "InconsistencyError": "sitesym.errors",
     "NotAStructureError": "sitesym.errors",
@@ -38,7 +46,9 @@ _HOMES = {
 
 __all__ = [
     "Analysis",
+    "Band",
     "BondRules",
+    "Explanation",
     "InconsistencyError",
     "MoleculeAnalysis",
     "NotAStructureError",
@@ -50,7 +60,9 @@ __all__ = [
     "analyse",
     "analyse_molecule",
     "compare_molecules",
+    "explain",
     "read",
+    "read_bands",
     "read_molecule",
 ]
 

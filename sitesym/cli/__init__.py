@@ -14,6 +14,7 @@ from collections.abc import Sequence
 from typing import NoReturn
 
 from sitesym.cli.compare import COMPARE
+from sitesym.cli.explain import EXPLAIN
 from sitesym.cli.output import check_output, leave_standard_output, speak_utf8, write
 from sitesym.cli.report import REPORT
 from sitesym.cli.shared import FORMATS, Command
@@ -25,7 +26,7 @@ __all__ = ["COMMANDS", "FORMATS", "main"]
 INTERNAL = 4
 INTERRUPTED = 130
 
-COMMANDS = (REPORT, COMPARE)
+COMMANDS = (REPORT, EXPLAIN, COMPARE)
 
 
 class _Parser(argparse.ArgumentParser):
