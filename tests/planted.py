@@ -16,8 +16,8 @@ from literature import expanded, reference
 from sitesym.analysis import Analysis, analyse
 from sitesym.bands.companions import rare_isotopes
 from sitesym.bands.inventory import Family, inventory
-from sitesym.bands.levels import allowed_species
 from sitesym.bands.measurement import INFRARED, RAMAN, TECHNIQUES, Band
+from sitesym.fate import Component
 from sitesym.known_units import composition_of
 
 CRYSTALS = (
@@ -127,18 +127,43 @@ def _band(value: float, technique: str, intensity: float = 8.0, geometry: str = 
 
 
 def _level(name: str, seen: Seen, rng: np.random.Generator, same: bool) -> Made:
-    means = {family.name: np.mean([np.mean(seen[key]) for key in seen if key[0] == family.name])
-             for family in known(name) if any(key[0] == family.name for key in seen)}  # fmt: skip
-    names = [family for family in known(name) if family.name in means]
-    if len(names) < 2:
+    """A sum of two fundamentals that were seen, allowed by the characters of the level: written out, no code shared."""
+    keys = sorted(seen)
+    if len(keys) < 2:
         return None
-    one = names[int(rng.integers(len(names)))]
-    two = one if same else names[int(rng.integers(len(names)))]
+    one = keys[int(rng.integers(len(keys)))]
+    two = one if same else keys[int(rng.integers(len(keys)))]
     technique = str(rng.choice(TECHNIQUES))
-    if (one is two) != same or not allowed_species(analysis_of(name).factor_group, one, two, same, technique):
+    if (one[0] == two[0]) != same or not _level_is_allowed(name, one, two, technique):
         return None
-    value = (means[one.name] + means[two.name]) * (1 - rng.uniform(0, 0.006))
+    value = (np.mean(seen[one]) + np.mean(seen[two])) * (1 - rng.uniform(0, 0.006))
     return (_band(value, technique), ()) if _is_free(name, value, technique, seen) else None
+
+
+def _level_is_allowed(name: str, one: tuple[str, str], two: tuple[str, str], technique: str) -> bool:
+    group = analysis_of(name).factor_group
+    table = {species.label: species.characters for species in group.species}
+    squares = np.array([row[g] for g, row in enumerate(group.products)])
+    traces = np.trace(group.matrices, axis1=1, axis2=2)
+    target = (traces**2 + traces[squares]) / 2 if technique == RAMAN else traces
+    for first in _components(name, one):
+        for second in _components(name, two):
+            level = table[first.label] * table[second.label]
+            if one == two and first.label == second.label and first.count == 1:
+                level = (level + table[first.label][squares]) / 2
+            if (level * target).mean() > 1e-6:
+                return True
+    return False
+
+
+def _components(name: str, key: tuple[str, str]) -> tuple[Component, ...]:
+    """What a technique showed of a family."""
+    family = next(one for one in known(name) if one.name == key[0])
+    return tuple(
+        part
+        for part in family.components
+        if (part.activity.raman if key[1] == RAMAN else part.activity.infrared)
+    )
 
 
 def _overtone(name: str, seen: Seen, rng: np.random.Generator) -> Made:

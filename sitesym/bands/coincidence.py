@@ -36,7 +36,7 @@ def coincidences(analysis: Analysis, families: Sequence[Family], bands: Sequence
     raman = [band for band in bands if band.technique == RAMAN]
     infrared = [band for band in bands if band.technique == INFRARED]
     pairs = tuple((one, two) for one in raman for two in infrared if _meet(one, two))
-    expected = sum(_accident(one, two, families) for one in raman for two in infrared)
+    expected = sum(_accident(one, two, families, bands) for one in raman for two in infrared)
     return Coincidences(pairs, expected, _at_least(len(pairs), expected), not analysis.factor_group.has_inversion)
 
 
@@ -44,14 +44,17 @@ def _meet(one: Band, two: Band) -> bool:
     return abs(one.wavenumber - two.wavenumber) <= hypot(one.uncertainty, two.uncertainty)
 
 
-def _accident(one: Band, two: Band, families: Sequence[Family]) -> float:
-    """Probability that two bands of one family's region meet by accident."""
+def _accident(one: Band, two: Band, families: Sequence[Family], bands: Sequence[Band]) -> float:
+    """Probability that two bands meet by accident: within the narrowest region that both share, else anywhere."""
     reach = hypot(one.uncertainty, two.uncertainty)
-    for family in families:
-        low, high = family.window
-        if low <= one.wavenumber <= high and low <= two.wavenumber <= high:
-            return min(1.0, 2 * reach / (high - low))
-    return 0.0
+    shared = [
+        high - low
+        for low, high in (family.window for family in families)
+        if low <= one.wavenumber <= high and low <= two.wavenumber <= high
+    ]
+    values = [band.wavenumber for band in bands]
+    width = min(shared) if shared else max(values) - min(values)
+    return min(1.0, 2 * reach / max(width, 2 * reach))
 
 
 def _at_least(count: int, mean: float) -> float:

@@ -15,7 +15,6 @@ from sitesym.bands.assignment import Placed
 from sitesym.bands.inventory import Family
 from sitesym.bands.measurement import RAMAN, Band
 from sitesym.bands.reasons import Reason
-from sitesym.errors import UsageError
 from sitesym.geometry.intensity import visible_species
 from sitesym.geometry.notation import parse_geometry
 from sitesym.known_units import composition_of
@@ -52,13 +51,13 @@ def longitudinal_reasons(band: Band, placed: Sequence[Placed]) -> list[Reason]:
 
 
 def shown_species(analysis: Analysis, band: Band) -> frozenset[str] | None:
-    """Species that the stated geometry shows; None where none is stated or it cannot be read."""
+    """Species that the stated geometry shows; None where none is stated.
+
+    Raises UsageError for a geometry that cannot be read or cannot be.
+    """
     if not band.geometry or band.technique != RAMAN:
         return None
-    try:
-        geometry = parse_geometry(band.geometry, analysis.symmetry.lattice)
-    except UsageError:
-        return None
+    geometry = parse_geometry(band.geometry, analysis.symmetry.lattice)
     return visible_species([row.tensor for row in analysis.species], geometry)
 
 

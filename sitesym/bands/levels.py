@@ -18,6 +18,7 @@ from sitesym.bands.assignment import Placed
 from sitesym.bands.inventory import Family
 from sitesym.bands.measurement import RAMAN, Band
 from sitesym.bands.reasons import Reason
+from sitesym.fate import Component
 from sitesym.groups.point_group import PointGroup
 from sitesym.groups.products import product, symmetrised_power
 from sitesym.selection import activity_of
@@ -31,43 +32,53 @@ RESONANCE_REACH = 120.0
 
 @dataclass(frozen=True, slots=True)
 class Parent:
-    """A fundamental that was seen: its family and its mean wavenumber (cm⁻¹)."""
+    """A fundamental that was seen in one technique: its family and its mean wavenumber (cm⁻¹) there.
+
+    components  those of the family that the technique shows: what was seen in Raman is g where there is inversion.
+    """
 
     family: Family
+    technique: str
     wavenumber: float
+
+    @property
+    def components(self) -> tuple[Component, ...]:
+        """What was seen: the components active in the technique."""
+        return self.family.active(self.technique)
 
 
 def parents_of(placed: Sequence[Placed]) -> tuple[Parent, ...]:
-    """The families that bands were given to; lattice modes and nets one parent for each band."""
-    found: dict[str, list[float]] = {}
-    families: dict[str, Family] = {}
+    """The families that bands were given to, by technique; lattice modes and nets one parent for each band."""
+    found: dict[tuple[str, str], list[float]] = {}
+    families: dict[tuple[str, str], Family] = {}
     for one in placed:
         if one.family is not None:
             name = one.family.name if one.family.is_internal else f"{one.family.name} {one.band.wavenumber:g}"
-            families[name] = one.family
-            found.setdefault(name, []).append(one.band.wavenumber)
-    return tuple(Parent(families[name], sum(values) / len(values)) for name, values in found.items())
+            key = name, one.band.technique
+            families[key] = one.family
+            found.setdefault(key, []).append(one.band.wavenumber)
+    return tuple(Parent(families[key], key[1], sum(values) / len(values)) for key, values in found.items())
 
 
 def level_reasons(analysis: Analysis, band: Band, parents: Sequence[Parent]) -> list[Reason]:
     """Overtones, sums and differences of two observed fundamentals that fall on a band and are allowed there."""
     reasons = []
     for one, two in combinations_with_replacement(parents, 2):
-        same = one is two
-        reasons += _sum(analysis.factor_group, band, one, two, same)
-        if not same:
+        reasons += _sum(analysis.factor_group, band, one, two)
+        if one.family is not two.family:
             reasons += _difference(analysis.factor_group, band, one, two)
     return reasons
 
 
-def _sum(group: PointGroup, band: Band, one: Parent, two: Parent, same: bool) -> list[Reason]:
+def _sum(group: PointGroup, band: Band, one: Parent, two: Parent) -> list[Reason]:
     expected = one.wavenumber + two.wavenumber
     fit = _closeness(band, expected)
     if fit <= 0:
         return []
-    species = allowed_species(group, one.family, two.family, same, band.technique)
+    species = allowed_species(group, one, two, band.technique)
     if not species:
         return []
+    same = one.family is two.family and one.family.is_internal
     internal = one.family.is_internal and two.family.is_internal
     prior = (0.62 if same else 0.5) * (1.0 if internal else 0.55)
     name = f"2{one.family.vibration}" if same else f"{one.family.vibration} + {two.family.vibration}"
@@ -86,7 +97,7 @@ def _difference(group: PointGroup, band: Band, one: Parent, two: Parent) -> list
     fit = _closeness(band, expected)
     if fit <= 0 or lower.wavenumber > 700 or not upper.family.is_internal:
         return []
-    species = allowed_species(group, upper.family, lower.family, False, band.technique)
+    species = allowed_species(group, upper, lower, band.technique)
     if not species:
         return []
     argument = (
@@ -111,12 +122,12 @@ def _closeness(band: Band, expected: float) -> float:
 
 
 @lru_cache(maxsize=4096)
-def allowed_species(group: PointGroup, one: Family, two: Family, same: bool, technique: str) -> tuple[str, ...]:
-    """Species of a binary level of two families that a technique shows, in the group's order."""
+def allowed_species(group: PointGroup, one: Parent, two: Parent, technique: str) -> tuple[str, ...]:
+    """Species of a binary level of two parents that a technique shows, in the group's order."""
     found: set[str] = set()
     for first in one.components:
         for second in two.components:
-            if same and first.label == second.label:
+            if one == two and first.label == second.label and first.count == 1:
                 found |= set(symmetrised_power(group, first.label, 2))
             else:
                 found |= set(product(group, (first.label, second.label)))
@@ -151,7 +162,7 @@ def _resonances(
         low, high = sorted((band.wavenumber, partner.wavenumber))
         if family in (one.family, two.family) or not low - 15 <= expected <= high + 15:
             continue
-        shared = own & set(allowed_species(group, one.family, two.family, one is two, band.technique))
+        shared = own & set(allowed_species(group, one, two, band.technique))
         if not shared:
             continue
         name = f"2{one.family.vibration}" if one is two else f"{one.family.vibration} + {two.family.vibration}"
