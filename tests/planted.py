@@ -160,9 +160,7 @@ def _components(name: str, key: tuple[str, str]) -> tuple[Component, ...]:
     """What a technique showed of a family."""
     family = next(one for one in known(name) if one.name == key[0])
     return tuple(
-        part
-        for part in family.components
-        if (part.activity.raman if key[1] == RAMAN else part.activity.infrared)
+        part for part in family.components if (part.activity.raman if key[1] == RAMAN else part.activity.infrared)
     )
 
 

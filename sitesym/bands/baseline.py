@@ -11,7 +11,7 @@ import numpy as np
 
 from sitesym.groups.operation import Floats
 
-LENGTHS = {"raman": 800.0, "infrared": 3000.0}
+LENGTHS = {"raman": 800.0, "infrared": 10000.0}
 """cm⁻¹. The background follows what varies over longer distances only: fluorescence, and the far broader bands of
 infrared spectra must stay."""
 
@@ -30,7 +30,7 @@ def baseline(wavenumbers: Floats, signal: Floats, length: float) -> Floats:
             weigh least, above the background.
     """
     span = float(wavenumbers[-1] - wavenumbers[0])
-    length = min(length, span)
+    length = min(length, 3 * span)
     bins = min(len(signal), max(20, round(_POINTS_PER_LENGTH * span / length)))
     edges = np.linspace(wavenumbers[0], wavenumbers[-1], bins + 1)
     place = np.clip(np.searchsorted(edges, wavenumbers, side="right") - 1, 0, bins - 1)

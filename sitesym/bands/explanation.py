@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from math import hypot
 
 from sitesym.analysis import Analysis
 from sitesym.bands.allowed import reasons_of_place
@@ -88,13 +89,49 @@ def explain(
         raise UsageError("There are no bands to explain.", "Give a list of bands or a spectrum.")
     ordered = sorted(bands, key=lambda band: (TECHNIQUES.index(band.technique), band.wavenumber))
     families = inventory(analysis)
-    placed = assign(ordered, families, pinned=pinned, forbidden=forbidden)
-    lower = lowerings(analysis, families, ordered, placed)
+    same = same_bands(ordered)
+    distinct = [ordered[k] for k in dict.fromkeys(same)]
+    placed = assign(distinct, families, pinned=pinned, forbidden=forbidden)
+    lower = lowerings(analysis, families, distinct, placed)
     others = tuple(Suspect(name, inventory(other)) for name, other in suspects)
-    results = tuple(BandResult(one, _reasons(analysis, families, placed, one, lower, others, laser)) for one in placed)
-    return Explanation(
-        analysis, families, results, missing_bands(families, placed), lower, coincidences(analysis, families, ordered)
+    by_first = dict(zip(dict.fromkeys(same), placed, strict=True))
+    results = tuple(
+        _result(analysis, families, placed, band, by_first[first], lower, others, laser)
+        for band, first in zip(ordered, same, strict=True)
     )
+    return Explanation(
+        analysis, families, results, missing_bands(families, placed), lower, coincidences(analysis, families, distinct)
+    )
+
+
+def same_bands(ordered: Sequence[Band]) -> list[int]:
+    """For each band the index of the first that is the same one, seen in another geometry of the same technique.
+
+    Bands within their joint uncertainty are one where each states a geometry and no two state the same.
+    """
+    first: list[int] = []
+    for index, band in enumerate(ordered):
+        twins = [
+            k
+            for k in dict.fromkeys(first)
+            if ordered[k].technique == band.technique
+            and abs(ordered[k].wavenumber - band.wavenumber) <= hypot(ordered[k].uncertainty, band.uncertainty)
+            and band.geometry
+            and band.geometry not in {ordered[m].geometry for m, start in enumerate(first) if start == k} | {""}
+            and ordered[k].geometry
+        ]
+        first.append(twins[0] if twins else index)
+    return first
+
+
+def _result(
+    analysis: Analysis, families: Sequence[Family], placed: Sequence[Placed], band: Band, place: Placed,
+    lower: Sequence[Lowering], suspects: Sequence[Suspect], laser: float | None,
+) -> BandResult:  # fmt: skip
+    """One band as it was measured: its place is that of the mode, its reasons are those of its own geometry."""
+    own = replace(place, band=band)
+    others = [other for other in placed if other is not place]
+    return BandResult(own, _reasons(analysis, families, [*others, own], own, lower, suspects, laser))
 
 
 _BESIDE_PLACE = 0.6

@@ -30,6 +30,9 @@ LEAST = 0.01
 """Height of the weakest band that is picked, as a share of the strongest."""
 
 MOST = 250
+_RIPPLE = 0.08
+"""A narrow hump that makes up less of the height than this is noise on a strong band, which often grows with it."""
+
 _SIGNIFICANT = 6.0
 """By how many standard deviations a hump must rise in the matched filter; 1e6 places of white noise give none."""
 
@@ -159,15 +162,21 @@ def _humps(x: Floats, signal: Floats, rules: _Rules, least: float) -> list[Profi
     smallest = max(_SIGNIFICANT * sigma / 2, 0.5 * least * float(level.max()))
     found: list[tuple[Profile, float]] = []
     for spread in _spreads(step, len(even), widest):
-        response, gain = _filtered(level, spread)
+        response, gain, unit = _filtered(level, spread)
         smooth = gaussian_filter1d(level, spread / 2)
         core = 2.4 * spread * step
         for place in _maxima(response, _SIGNIFICANT * sigma * gain):
             centre, height = float(even[place]), float(smooth[place])
-            if height > smallest and all(abs(one.centre - centre) > 0.6 * max(core, other) for one, other in found):
+            is_ripple = response[place] < _RIPPLE * unit * height
+            if height > smallest and not is_ripple and _is_apart(centre, core, found):
                 width = _width(smooth, place, spread, step, core, widest)
                 found.append((Profile(centre, height, width, 0.7), core))
     return sorted((one for one, _ in found), key=lambda one: -one.height)[:MOST]
+
+
+def _is_apart(centre: float, core: float, found: Sequence[tuple[Profile, float]]) -> bool:
+    """Whether no band that was found lies within the core of this one."""
+    return all(abs(one.centre - centre) > 0.6 * max(core, other) for one, other in found)
 
 
 def _spreads(step: float, points: int, widest: float) -> list[float]:
@@ -179,8 +188,9 @@ def _spreads(step: float, points: int, widest: float) -> list[float]:
     return spreads
 
 
-def _filtered(level: Floats, spread: float) -> tuple[Floats, float]:
-    """The filtered spectrum, and the standard deviation that white noise of 1 has after the filter."""
+def _filtered(level: Floats, spread: float) -> tuple[Floats, float, float]:
+    """The filtered spectrum, the standard deviation that white noise of 1 has after the filter, and the height that a
+    Gaussian of the same spread and of height 1 has."""
     from scipy.signal import fftconvolve
 
     half = int(np.ceil(4 * spread))
@@ -188,7 +198,8 @@ def _filtered(level: Floats, spread: float) -> tuple[Floats, float]:
     kernel = (1 - t**2) * np.exp(-(t**2) / 2)
     kernel -= kernel.mean()
     padded = np.pad(level, half, mode="reflect", reflect_type="odd")
-    return np.asarray(fftconvolve(padded, kernel, mode="valid")), float(np.sqrt((kernel**2).sum()))
+    response = np.asarray(fftconvolve(padded, kernel, mode="valid"))
+    return response, float(np.sqrt((kernel**2).sum())), float((kernel * np.exp(-(t**2) / 2)).sum())
 
 
 def _maxima(response: Floats, threshold: float) -> Iterable[int]:
