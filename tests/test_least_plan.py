@@ -9,8 +9,10 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from literature import of_entry, reference
 from views_cases import case
 
+from sitesym.analysis import analyse
 from sitesym.errors import UsageError
 from sitesym.experiment.candidates import Candidate
 from sitesym.experiment.cover import Cover, least_cover
@@ -242,3 +244,15 @@ def test_faces_by_system_are_simple_and_not_parallel() -> None:
 def test_what_cannot_be_is_said(faces: tuple[str, ...], mounts: tuple[str, ...], words: str) -> None:
     with pytest.raises(UsageError, match=words):
         make_plan(case("rutile"), faces=faces, mounts=mounts)
+
+
+@pytest.mark.parametrize("name", ["calcite", "alpha-quartz", "molybdenite 2H", "forsterite"])
+@pytest.mark.parametrize("analyser", [True, False])
+def test_the_further_face_keeps_its_promise(name: str, analyser: bool) -> None:
+    """A plan with the recommended face added meets the demands that were promised for it, measured the same way."""
+    entry = next(one for one in reference("decompositions.toml")["compound"] if one["name"] == name)
+    analysis = analyse(of_entry(entry), scan=False, molecules=False)
+    plan = make_plan(analysis, faces=["001"], analyser=analyser)
+    if plan.further is not None:
+        again = make_plan(analysis, faces=["001", plan.further.face], analyser=analyser)
+        assert set(plan.further.meets) <= set(again.cover.met)

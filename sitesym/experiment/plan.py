@@ -178,7 +178,7 @@ def make_plan(
         results,
         cover,
         tuple(_measurement(analysis, offered[k], results[k], cover, setup) for k in cover.chosen),
-        _further(analysis, results, cover, faces) if faces else None,
+        _further(analysis, results, cover, faces, analyser, thin) if faces else None,
         setup,
     )
 
@@ -208,12 +208,18 @@ def _measurement(
 
 
 def _further(
-    analysis: Analysis, results: Sequence[GeometryResult], cover: Cover, faces: Sequence[str]
+    analysis: Analysis,
+    results: Sequence[GeometryResult],
+    cover: Cover,
+    faces: Sequence[str],
+    analyser: bool,
+    thin: bool,
 ) -> FurtherFace | None:
-    """The first of the helpful faces that, added to those at hand, meets most of what they leave."""
+    """The first of the helpful faces that, measured as those at hand, meets most of what they leave."""
     best: FurtherFace | None = None
     for face in helpful_faces(analysis, faces):
-        offered = (_usable(analysis, one, False) for one in candidates(analysis.symmetry.lattice, [face]))
+        tried = candidates(analysis.symmetry.lattice, [face], analyser=analyser)
+        offered = (_usable(analysis, one, thin) for one in tried)
         more = [what_it_shows(analysis, one.geometry) for one in offered if one is not None]
         wanted = [demand for demand in demands_of([*results, *more]) if demand not in cover.met]
         met = tuple(demand for demand in wanted if any(meets(result, demand) for result in more))
