@@ -4,6 +4,7 @@ import sitesym
 structure = sitesym.read("calcite.cif")
 analysis = sitesym.analyse(structure)
 explanation = sitesym.explain(analysis, sitesym.read_bands("raman.csv", "raman"))
+sheet = sitesym.plan(analysis, faces=["001"], lasers=[532])
 """
 
 from __future__ import annotations
@@ -19,6 +20,7 @@ if TYPE_CHECKING:
     from sitesym.bands.reading import read_bands
     from sitesym.bonding import BondRules
     from sitesym.errors import InconsistencyError, NotAStructureError, ReadError, SitesymError, UsageError
+    from sitesym.experiment.run_sheet import RunSheet, plan
     from sitesym.molecule_analysis import MoleculeAnalysis, analyse_molecule, compare_molecules
     from sitesym.reading import read, read_molecule
     from sitesym.structure import Structure
@@ -34,11 +36,13 @@ _HOMES = {
     "InconsistencyError": "sitesym.errors",
     "NotAStructureError": "sitesym.errors",
     "ReadError": "sitesym.errors",
+    "RunSheet": "sitesym.experiment.run_sheet",
     "SitesymError": "sitesym.errors",
     "UsageError": "sitesym.errors",
     "MoleculeAnalysis": "sitesym.molecule_analysis",
     "analyse_molecule": "sitesym.molecule_analysis",
     "compare_molecules": "sitesym.molecule_analysis",
+    "plan": "sitesym.experiment.run_sheet",
     "read": "sitesym.reading",
     "read_molecule": "sitesym.reading",
     "Structure": "sitesym.structure",
@@ -53,6 +57,7 @@ __all__ = [
     "MoleculeAnalysis",
     "NotAStructureError",
     "ReadError",
+    "RunSheet",
     "SitesymError",
     "Structure",
     "UsageError",
@@ -61,6 +66,7 @@ __all__ = [
     "analyse_molecule",
     "compare_molecules",
     "explain",
+    "plan",
     "read",
     "read_bands",
     "read_molecule",
