@@ -16,6 +16,7 @@ from typing import NoReturn
 from sitesym.cli.compare import COMPARE
 from sitesym.cli.explain import EXPLAIN
 from sitesym.cli.output import check_output, leave_standard_output, speak_utf8, write
+from sitesym.cli.plan import PLAN
 from sitesym.cli.report import REPORT
 from sitesym.cli.shared import FORMATS, Command
 from sitesym.errors import SitesymError, UsageError
@@ -26,7 +27,7 @@ __all__ = ["COMMANDS", "FORMATS", "main"]
 INTERNAL = 4
 INTERRUPTED = 130
 
-COMMANDS = (REPORT, EXPLAIN, COMPARE)
+COMMANDS = (REPORT, PLAN, EXPLAIN, COMPARE)
 
 
 class _Parser(argparse.ArgumentParser):
