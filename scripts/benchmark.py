@@ -30,6 +30,7 @@ REPOSITORY = Path(__file__).resolve().parent.parent
 STRUCTURES = REPOSITORY / "structures_demo"
 CALCITE = str(STRUCTURES / "calcite.cif")
 PYROPE = str(STRUCTURES / "pyrope.cif")
+UREA = str(STRUCTURES / "urea.cif")
 ATOMS = 2000
 LARGE_CELL = ["60.0 0.0 0.0", "2.9 30.3 0.0", "-3.7 1.3 30.7"]
 MOLECULAR_CELL = ["48.0 0.0 0.0", "0.0 24.3 0.0", "0.0 0.0 25.1"]
@@ -237,6 +238,36 @@ def molecule_row(what: str, best: dict[str, float], limit: float | None) -> Row:
     return Row(what, added, "5 datasets + 50 ms", 5e3 * best["dataset"] + 50, "ms", limit)
 
 
+# Plans ----------------------------------------------------------------------------------------------------------------
+
+TIME_PLAN = """
+import json, sys, time
+import sitesym
+structure = sitesym.read(sys.argv[1])
+analysis = sitesym.analyse(structure, scan=False, molecules=False)
+start = time.perf_counter()
+sheet = sitesym.plan(
+    analysis, faces=["001", "100", "010", "110", "101", "011"], mounts=["backscattering", "right-angle", "forward"]
+)
+planned = time.perf_counter()
+from sitesym.experiment.curves import angle_curves
+from sitesym.views.figures.polar import polar_plot
+drawings = [polar_plot(curve, "p") for curve in angle_curves(analysis, "001") if curve.allowed]
+assert sheet.steps and drawings
+print(json.dumps({"plan": planned - start, "polar": (time.perf_counter() - planned) / len(drawings)}))
+"""
+
+
+def plan_rows(rounds: int) -> list[Row]:
+    """The first plan and the first figure of a process, imports included, against the times allowed for them."""
+    runs = [child(TIME_PLAN, UREA) for _ in range(rounds)]
+    plan, polar = (1e3 * min(run[name] for run in runs) for name in ("plan", "polar"))
+    return [
+        Row("plan, 6 faces, 3 mounts, urea", plan, "time allowed", 500.0, "ms", 1.0),
+        Row("polar figure, urea on (001)", polar, "time allowed", 300.0, "ms", 1.0),
+    ]
+
+
 # Memory ---------------------------------------------------------------------------------------------------------------
 
 PEAK = """
@@ -346,7 +377,7 @@ def main() -> int:
         write_molecular_cell(molecular)
         write_chain_cell(chains)
         rows = process_rows(rounds) + analysis_rows(rounds, str(large))
-        rows += molecule_rows(rounds, str(chains), str(molecular)) + memory_rows(str(large))
+        rows += molecule_rows(rounds, str(chains), str(molecular)) + plan_rows(rounds) + memory_rows(str(large))
     print_table(rows)
     return int(any(row.over for row in rows))
 
