@@ -5,6 +5,7 @@ from __future__ import annotations
 import csv
 import io
 import re
+from dataclasses import replace
 from functools import partial
 
 import pytest
@@ -26,8 +27,9 @@ from views_cases import (
 )
 
 from sitesym.analysis import analyse
+from sitesym.structure import OpenQuestion
 from sitesym.views import csv as csv_view
-from sitesym.views import labels, latex, markdown
+from sitesym.views import labels, latex, markdown, text
 
 NAMES = ["calcite", "rutile", "alpha-quartz", "forsterite", "gypsum", "tungsten carbide", "yttrium aluminium garnet"]
 ATTACKS = [HOSTILE, FORMULA, ESCAPES, SPECIALS, "| a | b |\n|---|---|", "`code` [link](javascript:alert(1)) **b**"]
@@ -54,15 +56,50 @@ def test_csv_tables_hold_the_published_numbers(name: str) -> None:
 
 
 def test_csv_document_is_its_tables_with_empty_lines_between() -> None:
-    first, second, third = csv_view.render(case("calcite")).split("\n\n")
+    first, second, third, fourth = csv_view.render(case("calcite")).split("\n\n")
     assert first + "\n" == csv_view.species_table(case("calcite"))
     assert second + "\n" == csv_view.sites_table(case("calcite"))
-    assert third == csv_view.molecules_table(case("calcite"))
+    assert third + "\n" == csv_view.molecules_table(case("calcite"))
+    assert fourth == "code,message\n"
 
 
 def test_csv_has_no_table_of_molecules_where_there_are_none() -> None:
     """Rutile is a three-dimensional net."""
-    assert len(csv_view.render(case("rutile")).split("\n\n")) == 2
+    heads = [one.partition(",")[0] for one in csv_view.render(case("rutile")).split("\n\n")]
+    assert heads == ["species", "label", "code"]
+
+
+def test_csv_carries_the_cautions() -> None:
+    """Each caution with its code, in the order of the report; a message that looks like a formula is made harmless."""
+    doubtful = with_questions(case("rutile"), "hydrogen_missing", "deuterium")
+    rows = rows_of(csv_view.render(doubtful).split("\n\n")[-1])
+    assert [(row["code"], row["message"]) for row in rows] == [(one.code, one.message) for one in doubtful.cautions]
+    assert {"hydrogen_missing", "deuterium"} <= {row["code"] for row in rows}
+    bad = analyse(replace(doubtful.structure, questions=(OpenQuestion("odd", FORMULA),)))
+    assert rows_of(csv_view.cautions_table(bad.cautions))[-1]["message"] == f"'{FORMULA}"
+
+
+def test_csv_symbols_of_site_groups_are_as_in_the_tables() -> None:
+    """International Tables A: site 4a of I 4_1/a m d is -4m2, 6b of R -3 c is -3., 8a of F d -3 m -43m (from memory)."""
+    for name, symbol in (("zircon", "-4m2"), ("calcite", "-3."), ("diamond", "-43m")):
+        assert symbol in {row["site_group_symbol"] for row in rows_of(csv_view.sites_table(case(name)))}
+
+
+@pytest.mark.parametrize("name", ["rutile", "calcite"])
+def test_silent_stands_in_the_raman_column_of_every_document(name: str) -> None:
+    """One place for the word: text, Markdown and LaTeX as on the page (see tests/test_views_html.py)."""
+    shown = [row for row in case(name).species if row.activity.silent]
+    assert shown
+    section = text.render(case(name)).partition("\nSpecies\n")[2].partition("\n\n")[0]
+    printed = {line.split()[0]: line.split() for line in section.splitlines() if line.strip()}
+    table = next(one for one in tables_of(markdown.render(case(name))) if one[0][:2] == ["species", "total"])
+    cells = {ascii_labels(row[0]): row for row in table[1:]}
+    for row in shown:
+        assert printed[labels.text(row.label)][4:6] == ["·", "silent"]
+        assert cells[row.label][4:6] == ["", "silent"]
+        assert f"{labels.latex(row.label)} & {row.total} & {row.acoustic} & {row.optic} &  & silent & " in latex.render(
+            case(name)
+        )
 
 
 @pytest.mark.parametrize("label", [FORMULA, "+1", "-1+2", "@SUM(A1)", "\t=1", "\r=1", "  =1", "=HYPERLINK(1)"])

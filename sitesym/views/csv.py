@@ -1,16 +1,20 @@
-"""Tables as comma-separated values, an empty line between two: species, sites, and the correlation of molecules.
+"""Several tables as comma-separated values in one text, an empty line between two, each with its own head.
 
-The last one is the correlation diagram: one row for each path from a species of the free unit by way of the site to a
-species of the crystal. It is left out where there are no molecules.
+They are species (head begins `species,`), sites (`label,`), the correlation of molecules (`molecule,`) and cautions
+(`code,message`). The third is the correlation diagram: one row for each path from a species of the free unit by way of
+the site to a species of the crystal; it is left out where there are no molecules. The cautions are always there: no row
+below their head says that there is none.
 
 Names in structure files are written by strangers, and a spreadsheet runs what begins like a formula: a text cell that
-begins with one of = + - @, a tab or a carriage return gets an apostrophe in front (common practice).
+begins with one of = + - @, a tab or a carriage return gets an apostrophe in front (common practice). Symbols of groups
+such as -3m begin with a sign too, but are no formulas: they stay as they are.
 """
 
 from __future__ import annotations
 
 import csv
 import io
+import re
 from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
@@ -23,9 +27,12 @@ from sitesym.views.sentences import infrared_words, raman_words, resonance_words
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
     from sitesym.molecule_analysis import MoleculeAnalysis, MoleculeComparison
+    from sitesym.structure import OpenQuestion
 
 Cell = str | int | float
 _FORMULA = ("=", "+", "-", "@", "\t", "\r")
+_GROUP_SYMBOL = re.compile(r"-(1|3|4|6|8|10|12)[m0-9.]*")
+"""Hermann-Mauguin symbols of point groups that begin with a rotoinversion: digits, m and dots hold no formula."""
 
 SPECIES_COLUMNS = (
     "species", "dimension", "total", "acoustic", "optic", "infrared", "raman", "hyper_raman", "silent",
@@ -41,6 +48,7 @@ MOLECULE_COLUMNS = (
     "free_raman", "site_species", "site_count", "site_infrared", "site_raman", "crystal_species", "crystal_count",
     "infrared", "raman", "infrared_polarization",
 )  # fmt: skip
+CAUTION_COLUMNS = ("code", "message")
 
 
 def render(analysis: Analysis) -> str:
@@ -48,21 +56,22 @@ def render(analysis: Analysis) -> str:
     tables = [species_table(analysis), sites_table(analysis)]
     if molecules(analysis):
         tables.append(molecules_table(analysis))
+    tables.append(cautions_table(analysis.cautions))
     return "\n".join(tables)
 
 
 def render_molecule(result: MoleculeAnalysis) -> str:
-    """The vibrations of a free molecule, one row for each species and kind."""
+    """The vibrations of a free molecule, one row for each species and kind; then the cautions."""
     from sitesym.views.free_molecule_data import VIBRATION_COLUMNS, vibration_rows
 
-    return table(VIBRATION_COLUMNS, vibration_rows(result))
+    return "\n".join((table(VIBRATION_COLUMNS, vibration_rows(result)), cautions_table(result.cautions)))
 
 
 def render_comparison(result: MoleculeComparison) -> str:
-    """Numbers of bands of two free molecules side by side."""
-    from sitesym.views.free_molecule_data import COMPARISON_COLUMNS, comparison_rows
+    """Numbers of bands of two free molecules side by side; then the cautions."""
+    from sitesym.views.free_molecule_data import COMPARISON_COLUMNS, comparison_cautions, comparison_rows
 
-    return table(COMPARISON_COLUMNS, comparison_rows(result))
+    return "\n".join((table(COMPARISON_COLUMNS, comparison_rows(result)), cautions_table(comparison_cautions(result))))
 
 
 def species_table(analysis: Analysis) -> str:
@@ -123,6 +132,11 @@ def _path_cells(analysis: Analysis, number: int, path: Path) -> tuple[Cell, ...]
     )  # fmt: skip
 
 
+def cautions_table(cautions: Iterable[OpenQuestion]) -> str:
+    """One row a caution, the most serious first; the head alone where there is none."""
+    return table(CAUTION_COLUMNS, [(one.code, one.message) for one in cautions])
+
+
 def _ascii(words: str) -> str:
     """Our own words without the signs that a spreadsheet misreads when it guesses the encoding."""
     return words.replace("∥", "||").replace("−", "-")
@@ -144,6 +158,8 @@ def table(header: tuple[str, ...], rows: Iterable[tuple[Cell, ...]]) -> str:
 def _safe(cell: Cell) -> Cell:
     """Text that no spreadsheet takes for a formula; numbers as they are."""
     if not isinstance(cell, str):
+        return cell
+    if _GROUP_SYMBOL.fullmatch(cell):
         return cell
     text = printable(cell)
     return f"'{text}" if cell.startswith(_FORMULA) or text.lstrip().startswith(_FORMULA) else text

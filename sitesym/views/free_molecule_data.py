@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
+from sitesym.structure import OpenQuestion
 from sitesym.version import __version__
 from sitesym.views.labels import characters
 from sitesym.views.molecule_json import ascii_words, length
@@ -162,6 +163,13 @@ def comparison_rows(result: MoleculeComparison) -> list[Row]:
         (one.what, *_counts(one.first).values(), *_counts(one.second).values(), yes(one.differs))
         for one in (*result.bands, *result.stretches)
     ]
+
+
+def comparison_cautions(result: MoleculeComparison) -> tuple[OpenQuestion, ...]:
+    """Those on the two together, then those on each, which begin with A or B."""
+    sides = (("A", result.first), ("B", result.second))
+    own = [OpenQuestion(one.code, f"{name}: {one.message}") for name, side in sides for one in side.cautions]
+    return (*result.cautions, *own)
 
 
 def yes(answer: bool) -> str:

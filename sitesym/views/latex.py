@@ -100,10 +100,10 @@ def _species_table(analysis: Analysis) -> list[str]:
 
 
 def _species_line(row: SpeciesRow) -> tuple[str, ...]:
-    infrared = "silent" if row.activity.silent else _plain(sentences.infrared_words(row))
+    infrared, raman = _plain(sentences.infrared_words(row)), _plain(sentences.raman_or_silent(row))
     counts = (str(row.total), str(row.acoustic), str(row.optic))
     hyper = "yes" if row.activity.hyper_raman else ""
-    return (LATEX.species(row.label), *counts, infrared, _plain(sentences.raman_words(row)), hyper)
+    return (LATEX.species(row.label), *counts, infrared, raman, hyper)
 
 
 def _origins(analysis: Analysis) -> list[str]:

@@ -99,10 +99,10 @@ def _species_table(analysis: Analysis) -> list[str]:
 
 
 def _species_line(row: SpeciesRow) -> tuple[str, ...]:
-    infrared = "silent" if row.activity.silent else sentences.infrared_words(row)
+    infrared, raman = sentences.infrared_words(row), sentences.raman_or_silent(row)
     hyper = "yes" if row.activity.hyper_raman else ""
     counts = (str(row.total), str(row.acoustic), str(row.optic))
-    return (MARKDOWN.species(row.label), *counts, infrared, sentences.raman_words(row), hyper)
+    return (MARKDOWN.species(row.label), *counts, infrared, raman, hyper)
 
 
 def _unit_sections(analysis: Analysis) -> list[tuple[str, list[str]]]:

@@ -344,8 +344,8 @@ def without_wavenumber(molecular: MolecularAnalysis, style: Style = TEXT) -> str
 
 
 BAND_NOTE = (
-    "Free wavenumbers shift in the crystal by 5 to 30 cm⁻¹, those of hydrogen-bonded groups by far more. Components of "
-    "one vibration stand on one line, for symmetry does not tell how far they lie apart."
+    "Free wavenumbers usually shift in the crystal by 5 to 30 cm⁻¹, but the stretches of oxyanions (ν3) may spread over "
+    "100 cm⁻¹ and more, and those of hydrogen-bonded groups shift by far more. Components of one vibration stand on one line, for symmetry does not tell how far they lie apart."
 )
 
 

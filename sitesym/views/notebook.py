@@ -51,7 +51,7 @@ def _table(analysis: Analysis) -> str:
 
 
 def _row(row: SpeciesRow) -> str:
-    raman = sentences.raman_words(row) or ("silent" if row.activity.silent else "–")
+    raman = sentences.raman_or_silent(row) or "–"
     cells = (str(row.optic), str(row.acoustic), sentences.infrared_words(row) or "–", raman)
     data = "".join(f"<td {_CELL}>{HTML.plain(cell)}</td>" for cell in cells)
     return f'<tr><th scope="row" {_CELL}>{HTML.species(row.label)}</th>{data}</tr>'

@@ -86,6 +86,11 @@ def raman_words(row: SpeciesRow) -> str:
     return ", ".join(raman_elements(row.tensor))
 
 
+def raman_or_silent(row: SpeciesRow) -> str:
+    """The same; the word silent for a species that is in neither spectrum. It stands in the Raman column everywhere."""
+    return raman_words(row) or ("silent" if row.activity.silent else "")
+
+
 def raman_elements(tensor: TensorSpecies) -> tuple[str, ...]:
     """One entry for each independent element of the symmetric tensor, partners of a degenerate species in brackets."""
     entries: dict[frozenset[str], str] = {}

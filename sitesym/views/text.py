@@ -160,10 +160,11 @@ def _species_table(analysis: Analysis) -> list[str]:
 
 
 def _species_line(row: SpeciesRow) -> tuple[str, ...]:
-    infrared = "silent" if row.activity.silent else sentences.infrared_words(row) or ZERO
+    infrared = sentences.infrared_words(row) or ZERO
+    raman = sentences.raman_or_silent(row) or ZERO
     hyper = "yes" if row.activity.hyper_raman else ZERO
     counts = (str(count) if count else ZERO for count in (row.total, row.acoustic, row.optic))
-    return (TEXT.species(row.label), *counts, infrared, sentences.raman_words(row) or ZERO, hyper)
+    return (TEXT.species(row.label), *counts, infrared, raman, hyper)
 
 
 def _notes(analysis: Analysis) -> list[str]:
