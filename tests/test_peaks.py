@@ -160,6 +160,18 @@ def test_broad_infrared_bands_beside_sharp_ones() -> None:
         assert abs(centre - line.centre) < max(4 * error, 0.5)
 
 
+def test_noise_that_grows_with_the_absorbance_makes_no_bands() -> None:
+    """The same noise in transmittance everywhere, hence seven times as much on top of a band of absorbance 0.9."""
+    lines = (Line(712, 0.3, 6), Line(1420, 0.9, 90))
+    x = np.arange(400.0, 4000.0, 2.0)
+    transmittance = 10 ** -sum(line.at(x) for line in lines)
+    noisy = transmittance + np.random.default_rng(2).normal(0, 0.002, len(x))
+    found = pick(Spectrum(x, -np.log10(noisy), "infrared", "synthetic"))
+    assert [round(peak.wavenumber) for peak in found.peaks] == [712, 1420]
+    assert found.peaks[1].height == pytest.approx(0.9, rel=0.05)
+    assert found.peaks[1].profile.width == pytest.approx(90, rel=0.05)
+
+
 def test_spike_is_said_to_be_one() -> None:
     whole = spectrum((Line(900, 500, 12),), sigma=2.0)
     signal = whole.signal.copy()

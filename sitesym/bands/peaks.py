@@ -30,7 +30,7 @@ LEAST = 0.01
 """Height of the weakest band that is picked, as a share of the strongest."""
 
 MOST = 250
-_RIPPLE = 0.08
+_RIPPLE = 0.04
 """A narrow hump that makes up less of the height than this is noise on a strong band, which often grows with it."""
 
 _SIGNIFICANT = 6.0
@@ -189,8 +189,7 @@ def _spreads(step: float, points: int, widest: float) -> list[float]:
 
 
 def _filtered(level: Floats, spread: float) -> tuple[Floats, float, float]:
-    """The filtered spectrum, the standard deviation that white noise of 1 has after the filter, and the height that a
-    Gaussian of the same spread and of height 1 has."""
+    """The filtered spectrum, the standard deviation that white noise of 1 has then, and the height of a Gaussian of 1."""
     from scipy.signal import fftconvolve
 
     half = int(np.ceil(4 * spread))

@@ -43,7 +43,7 @@ def paragraph(explanation: Explanation, style: Style = TEXT) -> str:
         if mine := of(explanation, technique):
             sentences += [_placed(technique, mine, style), *_others(explanation, technique, mine, style)]
     sentences += [coincidence_sentence(explanation), _missing_sentence(explanation)]
-    lowering = [_lowering_sentence(explanation, style)] if explanation.lowerings else []
+    lowering = [_lowering_sentence(explanation, style)] if _asks_for_lowering(explanation) else []
     plain = [style.plain(one) if k > 0 else one for k, one in enumerate(sentences[-2:], start=1) if one]
     closing = style.plain(f"Bands were put to what symmetry allows with sitesym {__version__}.")
     return style.plain(" ").join(filter(None, [*sentences[:-2], *plain, *lowering, closing]))
@@ -157,6 +157,13 @@ def _missing_sentence(explanation: Explanation) -> str:
     ]
     words = [f"{count} in {name}" for name, count in counts if count]
     return f"Of the fundamentals allowed, {listed(words)} were not seen." if words else ""
+
+
+def _asks_for_lowering(explanation: Explanation) -> bool:
+    """Whether a band that lower symmetry would give a place has no better reason."""
+    explained = {band for one in explanation.lowerings[:1] for band in one.explains}
+    causes = {one.reasons[0].cause for one in explanation.bands if one.band in explained}
+    return bool(causes & {"symmetry_lowering", "unexplained"})
 
 
 def _lowering_sentence(explanation: Explanation, style: Style) -> str:
