@@ -8,6 +8,7 @@ from functools import cached_property
 from sitesym.bonding import BondRules
 from sitesym.cautions import cautions_of
 from sitesym.decomposition import checked_sum, site_contribution
+from sitesym.errors import UsageError
 from sitesym.groups.point_group import PointGroup
 from sitesym.groups.subduction import Multiplicities, reduce_characters, subtracted
 from sitesym.molecular import MolecularAnalysis, analyse_molecules
@@ -20,6 +21,10 @@ from sitesym.symmetry.site_symbol import oriented_symbol
 from sitesym.tensors import TensorSpecies, tensor_species
 from sitesym.units import customary
 from sitesym.wavenumbers import Wavenumbers
+
+
+AXES = ("auto", "input", "standard")
+"""Which axes a report may follow: see `analyse`."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -184,6 +189,7 @@ def analyse(
 
     Raises UsageError for arguments that make no sense, InconsistencyError when two routes to a number disagree.
     """
+    _check_arguments(structure, tolerance, axes, setting)
     symmetry = find_symmetry(structure, tolerance, axes=axes, setting=setting)
     sites = _site_rows(symmetry)
     whole = checked_sum(symmetry, (row.contribution for row in sites))
@@ -194,6 +200,21 @@ def analyse(
         structure, symmetry, sites, species, _totals(symmetry, species), describe_axes(symmetry),
         scanned, molecular, cautions_of(structure, symmetry, scanned),
     )  # fmt: skip
+
+
+def _check_arguments(structure: object, tolerance: object, axes: object, setting: object) -> None:
+    """Say in plain words what a caller of the Python interface mixed up."""
+    if not isinstance(structure, Structure):
+        raise UsageError(
+            f"analyse takes a Structure, not a value of type {type(structure).__name__}.",
+            "Make one with sitesym.read(...), which takes paths, ase.Atoms and pymatgen structures.",
+        )
+    if isinstance(tolerance, bool) or not isinstance(tolerance, (int, float)):
+        raise UsageError(f"A tolerance is a number of Å, not {tolerance!r}.", "Give one such as 0.01.")
+    if axes not in AXES:
+        raise UsageError(f"{axes!r} is no choice of axes.", f"Choose from {', '.join(AXES)}.")
+    if setting is not None and not isinstance(setting, str):
+        raise UsageError(f"A setting is a Hermann-Mauguin symbol, not {setting!r}.", "Give one such as 'Pbnm'.")
 
 
 @dataclass(frozen=True, eq=False)
