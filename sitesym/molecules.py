@@ -15,6 +15,7 @@ from sitesym.groups.point_group import PointGroup
 from sitesym.known_units import known_groups
 from sitesym.molecule_frame import molecule_group
 from sitesym.molecule_symmetry import DEFAULT_TOLERANCE, MoleculeSymmetry, find_operations
+from sitesym.structure import FULL
 from sitesym.symmetry.crystal import CrystalSymmetry
 from sitesym.symmetry.primitive import PrimitiveCell, moved, primitive_cell
 from sitesym.units import Unit, bonds_of, find_units
@@ -24,6 +25,10 @@ KNOWN_UNIT_TOLERANCE = 0.6
 
 _TOGETHER = 0.6
 """Å. Two atoms closer than this are never there together; the shortest bond, H-H, is 0.74 Å."""
+
+_IN_PART = (
+    "some of its atoms are there only in part of the cells, so that the average is no molecule that could be followed"
+)
 
 _TIGHTER = (0.12, 0.06)
 """Å. Tried where the default makes a tabulated unit more symmetric than it is (a water molecule straight)."""
@@ -149,7 +154,8 @@ def _unit_set(
     atoms = np.concatenate([division.units[member].atoms for member in members])
     points = cell.structure.fractional[unit.atoms] + unit.shifts
     centre = points.mean(axis=0) @ cell.basis
-    obstacle = _obstacle(points @ cell.structure.lattice)
+    shares = [cell.structure.sites[atom].occupancy for atom in unit.atoms]
+    obstacle = _obstacle(points @ cell.structure.lattice, shares)
     if unit.dimension > 0 or obstacle:
         return UnitSet(unit, len(members), None, None, centre, atoms, None, obstacle)
     kept = _stabiliser(symmetry, cell, division, index)
@@ -167,14 +173,14 @@ def _unit_set(
     return UnitSet(unit, len(members), kept, site_group, centre, atoms, free)
 
 
-def _obstacle(points: Floats) -> str:
-    """Atoms of a finite unit that cannot be there together: alternatives of a disordered one."""
+def _obstacle(points: Floats, shares: Sequence[float]) -> str:
+    """Atoms of a finite unit that are not there together: alternatives of a disordered one, or atoms there in part."""
     if len(points) < 2:
         return ""
     distance = np.linalg.norm(points[:, None] - points[None], axis=2)
     np.fill_diagonal(distance, np.inf)
     if distance.min() >= _TOGETHER:
-        return ""
+        return "" if min(shares) >= FULL * max(shares) else _IN_PART
     return (
         f"two of its atoms are only {distance.min():.2f} Å apart, alternatives of a disordered unit, so that the "
         "average is no molecule that could be followed"

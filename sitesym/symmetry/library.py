@@ -7,6 +7,7 @@ International Tables B, as spglib stores them.
 
 from __future__ import annotations
 
+import os
 import warnings
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -18,6 +19,8 @@ import spglib
 
 from sitesym.errors import InconsistencyError, UsageError
 from sitesym.groups.operation import Floats, Integers
+
+os.environ.setdefault("SPGLIB_WARNING", "OFF")  # its remarks on attempts that failed before one succeeded
 
 LARGEST_TOLERANCE = 2.0
 """Å. Beyond this every atom meets its neighbours and no space group means anything."""
