@@ -17,6 +17,7 @@ from sitesym.experiment.layout import Layout, check_edges, edge_in, edges_of, la
 from sitesym.experiment.patterns import Comparison, Pattern, comparisons_of, patterns_of
 from sitesym.experiment.plan import Conditions, Measurement, Plan, make_plan
 from sitesym.experiment.powder import PowderRow, powder_rows
+from sitesym.experiment.refraction import beam_words, cone_words
 from sitesym.experiment.shown import raman_rows
 from sitesym.experiment.unoriented import Unoriented, unoriented_measurements, unoriented_words
 from sitesym.geometry.directions import Direction, face_normal
@@ -52,11 +53,15 @@ class Sample:
 
 @dataclass(frozen=True, eq=False)
 class Step:
-    """One numbered measurement: what it shows, how it stands in the laboratory, what to compare it with."""
+    """One numbered measurement: what it shows, how it stands in the laboratory, what to compare it with.
+
+    refraction  what refraction does to its beams, a plain clause, "" where it does nothing.
+    """
 
     measurement: Measurement
     layout: Layout
     comparison: Comparison | None
+    refraction: str
 
 
 @dataclass(frozen=True, eq=False)
@@ -85,6 +90,7 @@ class RunSheet:
     steps       the measurements in order: the chosen ones, or where no faces are known all geometries that the user
                 named; `patterns` how to read them together. needed: numbers, from 0, of those that do the work of all.
     asked       geometries that the user named beside faces.
+    cone        the cone of the objective in and outside the crystal, a plain clause, "" without an aperture.
     unoriented  what to measure on powders and grains, with `unoriented_words`; else empty.
     powder      limits of depolarization ratios of all Raman-active species.
     infrared    faces with their species; `infrared_words` how to measure and read them: sentences with the faces for
@@ -100,6 +106,7 @@ class RunSheet:
     steps: tuple[Step, ...]
     needed: tuple[int, ...]
     asked: tuple[Step, ...]
+    cone: str
     patterns: tuple[Pattern, ...]
     unoriented: tuple[Unoriented, ...]
     unoriented_words: tuple[str, ...]
@@ -156,7 +163,7 @@ def plan(
     thing = _sample(analysis, sample, faces, edges, geometries)
     raman = _raman(analysis, thing, mounts, analyser, geometries, conditions)
     listed = () if raman is None else raman.measurements if raman.faces else raman.asked
-    steps = _steps(analysis, listed, thing)
+    steps = _steps(raman, listed, thing) if raman else ()
     rows = powder_rows(analysis)
     benches = tuple(laser_bench(line, temperature) for line in lasers)
     sides = _infrared_faces(analysis, thing, infrared)
@@ -166,7 +173,8 @@ def plan(
         raman,
         steps,
         () if raman is None else tuple(range(len(steps))) if raman.faces else raman.cover.chosen,
-        _steps(analysis, raman.asked, thing) if raman and raman.faces else (),
+        _steps(raman, raman.asked, thing) if raman and raman.faces else (),
+        cone_words(raman.conditions.aperture, raman.conditions.index) if raman else "",
         patterns_of([step.measurement.result for step in steps]),
         () if thing.is_oriented else unoriented_measurements(rows),
         () if thing.is_oriented or not rows else unoriented_words(analysis, rows, thing.kind),
@@ -222,10 +230,15 @@ def _raman(
     )
 
 
-def _steps(analysis: Analysis, measurements: Sequence[Measurement], sample: Sample) -> tuple[Step, ...]:
+def _steps(raman: Plan, measurements: Sequence[Measurement], sample: Sample) -> tuple[Step, ...]:
     comparisons = comparisons_of([one.result for one in measurements])
     return tuple(
-        Step(one, layout_of(analysis, one.candidate, sample.edges), comparison)
+        Step(
+            one,
+            layout_of(raman.analysis, one.candidate, sample.edges),
+            comparison,
+            beam_words(one.candidate.geometry, raman.conditions.index),
+        )
         for one, comparison in zip(measurements, comparisons, strict=True)
     )
 

@@ -116,6 +116,7 @@ def _least_plan(sheet: RunSheet) -> Document:
         "unseen": list(plan.unseen),
         "phonons_unseen": list(plan.other_phonons),
         "further_face": _further(plan),
+        "cone": sheet.cone or None,
         "steps": [_step(step) for step in sheet.steps],
         "patterns": [
             {"name": one.name, "label": one.label, "phonon": one.phonon, "seen": list(one.seen)}
@@ -138,7 +139,7 @@ def _step(step: Step) -> Document:
         "laser_angle": layout.incoming,
         "analyser_angle": layout.outgoing,
         "leaks": _leaks(one),
-        "optics": [note.words for note in one.beams] + ([one.activity] if one.activity else []),
+        "optics": [*(note.words for note in one.beams), *filter(None, (one.activity, step.refraction))],
     }
 
 

@@ -158,10 +158,10 @@ def optics_notes(sheet: RunSheet) -> dict[str, list[str]]:
     notes: dict[str, list[str]] = {}
     for number, step in enumerate(sheet.steps, start=1):
         one = step.measurement
-        for said in dict.fromkeys([*(beam.words for beam in one.beams), one.activity]):
+        for said in dict.fromkeys([*(beam.words for beam in one.beams), one.activity, step.refraction]):
             if said:
                 notes.setdefault(said, []).append(str(number))
-    return notes
+    return notes | ({sheet.cone: ["all"]} if sheet.cone and sheet.steps else {})
 
 
 def letter_values(curve: AngleCurve) -> str:
