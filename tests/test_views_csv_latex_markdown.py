@@ -80,7 +80,7 @@ def test_csv_carries_the_cautions() -> None:
 
 
 def test_csv_symbols_of_site_groups_are_as_in_the_tables() -> None:
-    """International Tables A: site 4a of I 4_1/a m d is -4m2, 6b of R -3 c is -3., 8a of F d -3 m -43m (from memory)."""
+    """International Tables A, from memory: 4a of I 4_1/a m d is -4m2, 6b of R -3 c -3., 8a of F d -3 m -43m."""
     for name, symbol in (("zircon", "-4m2"), ("calcite", "-3."), ("diamond", "-43m")):
         assert symbol in {row["site_group_symbol"] for row in rows_of(csv_view.sites_table(case(name)))}
 

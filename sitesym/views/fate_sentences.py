@@ -129,4 +129,6 @@ def bands_words(found: Counts) -> str:
     if infrared == raman == 1:
         return "one band in each"
     shared = f", {spelled(both)} of them the same" if both else ""
+    if raman == 1:
+        return f"{spelled(infrared)} infrared bands and one Raman band{shared}"
     return f"{spelled(infrared)} infrared and {spelled(raman)} Raman bands{shared}"

@@ -13,11 +13,13 @@ from typing import TYPE_CHECKING, Any
 
 from sitesym.version import __version__
 from sitesym.views import sentences
+from sitesym.views.band_summary import LEGEND, band_lines
 from sitesym.views.html_molecules import molecules_part, origins_part
 from sitesym.views.labels import HTML
 from sitesym.views.method import paragraphs, references
 from sitesym.views.tables import site_table, tensor_groups
 from sitesym.views.templating import environment, ready
+from sitesym.views.units_formula import units_entries
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis
@@ -84,6 +86,9 @@ def _answer(analysis: Analysis) -> Values:
         "axes": analysis.axes,
         "atoms": sentences.atoms_words(analysis),
         "exclusion": ready(sentences.exclusion(analysis, HTML)),
+        "bands": [ready(line) for line in band_lines(analysis, HTML)],
+        "bands_legend": LEGEND,
+        "units": ready("; ".join(units_entries(analysis, HTML))),
     }
 
 

@@ -10,6 +10,7 @@ from sitesym.version import __version__
 from sitesym.views import molecule_sentences, molecule_tables, sentences
 from sitesym.views.labels import LATEX, decomposition
 from sitesym.views.method import paragraphs, references
+from sitesym.views.units_formula import units_entries
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
@@ -121,7 +122,7 @@ def _origins(analysis: Analysis) -> list[str]:
 
 def _molecules(analysis: Analysis) -> list[list[str]]:
     """For each kind of molecule the table of its correlation and the sentences on its vibrations."""
-    parts = [_list("Units:", molecule_sentences.units_words(analysis, LATEX))]
+    parts = [_list("Units:", units_entries(analysis, LATEX))]
     notes = [
         *molecule_sentences.net_sentences(analysis, LATEX), *molecule_sentences.inequivalent_sentences(analysis, LATEX),
     ]  # fmt: skip

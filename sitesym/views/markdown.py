@@ -9,6 +9,7 @@ from sitesym.tensors import element_expressions
 from sitesym.views import molecule_sentences, molecule_tables, sentences
 from sitesym.views.labels import MARKDOWN, decomposition
 from sitesym.views.method import paragraphs, references
+from sitesym.views.units_formula import units_entries
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
@@ -61,7 +62,7 @@ def _answer(analysis: Analysis) -> list[str]:
         ("Axes", analysis.axes),
         ("Atoms", sentences.atoms_words(analysis)),
     )
-    units = "; ".join(molecule_sentences.units_words(analysis, MARKDOWN))
+    units = "; ".join(units_entries(analysis, MARKDOWN))
     return [
         f"# {title}",
         "",

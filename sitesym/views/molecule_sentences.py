@@ -33,7 +33,7 @@ def units_words(analysis: Analysis, style: Style = TEXT) -> tuple[str, ...]:
     molecular = analysis.molecular
     if molecular is None:
         return ()
-    words = [_molecule_words(row, style) for row in molecular.molecules]
+    words = [_molecule_words(row, analysis, style) for row in molecular.molecules]
     words += [_net_words(net, style) for net in molecular.nets]
     atoms: dict[str, int] = {}
     for one in molecular.atoms:
@@ -43,9 +43,11 @@ def units_words(analysis: Analysis, style: Style = TEXT) -> tuple[str, ...]:
     return tuple(words)
 
 
-def _molecule_words(row: MoleculeRow, style: Style) -> str:
+def _molecule_words(row: MoleculeRow, analysis: Analysis, style: Style) -> str:
+    label = distinguishing_label(row, analysis)
+    which = f" with {style.plain(label)}" if label else ""
     groups = f"{style.schoenflies(row.free.group.schoenflies)} on {site_group_words(row, style)}"
-    return f"{row.units.count} {style.formula(row.name)} ({groups})"
+    return f"{row.units.count} {style.formula(row.name)}{which} ({groups})"
 
 
 def _net_words(net: UnitSet, style: Style) -> str:
@@ -344,8 +346,9 @@ def without_wavenumber(molecular: MolecularAnalysis, style: Style = TEXT) -> str
 
 
 BAND_NOTE = (
-    "Free wavenumbers usually shift in the crystal by 5 to 30 cm⁻¹, but the stretches of oxyanions (ν3) may spread over "
-    "100 cm⁻¹ and more, and those of hydrogen-bonded groups shift by far more. Components of one vibration stand on one line, for symmetry does not tell how far they lie apart."
+    "Free wavenumbers usually shift in the crystal by 5 to 30 cm⁻¹, but the stretches of oxyanions (ν3) may spread "
+    "over 100 cm⁻¹ and more, and those of hydrogen-bonded groups shift by far more. Components of one vibration stand "
+    "on one line, for symmetry does not tell how far they lie apart."
 )
 
 

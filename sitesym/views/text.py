@@ -8,11 +8,12 @@ from typing import TYPE_CHECKING
 from sitesym.structure import FULL
 from sitesym.tensors import element_expressions
 from sitesym.views import sentences
+from sitesym.views.band_summary import LEGEND, band_lines
 from sitesym.views.labels import TEXT, decomposition, printable
 from sitesym.views.layout import WIDTH, ZERO, clip, clip_start, side_by_side, table, width, wrap
 from sitesym.views.method import paragraphs, references
-from sitesym.views.molecule_sentences import units_words
 from sitesym.views.molecule_text import origins, unit_sections
+from sitesym.views.units_formula import units_entries
 
 if TYPE_CHECKING:
     from sitesym.analysis import Analysis, SiteRow, SpeciesRow
@@ -68,8 +69,10 @@ def first_screen(analysis: Analysis) -> tuple[list[str], int]:
     rest = ["", *_sums(analysis), "", *_counts(analysis)]
     head = [*_title(analysis), *top, "", *_crystal(analysis)]
     room = SCREEN - 2 - len(head) - len(rest)
-    head += [*_units(analysis, min(max(room, 1), 2)), *rest]
+    units = _units(analysis, min(max(room, 1), 2))
     others = sentences.other_cautions(analysis)
+    taken = len(units) + sum(len(_caution(question)) for question in others)
+    head += [*units, *_bands(analysis, room - taken), *rest]
     if not analysis.cautions:
         return [*head, "", "No cautions: nothing doubtful was found in the structure or its symmetry."], 0
     shown, left = _fitting(others, SCREEN - len(head) - 2)
@@ -119,11 +122,23 @@ def _crystal(analysis: Analysis) -> list[str]:
 
 def _units(analysis: Analysis, lines: int) -> list[str]:
     """The units found, cut to one or two lines; all of them stand in the section on units."""
-    words = "; ".join(units_words(analysis))
+    words = "; ".join(units_entries(analysis))
     whole = _field("Units", words) if words else []
     if len(whole) <= lines:
         return whole
     return [*whole[: lines - 1], clip(f"{whole[lines - 1]} …", WIDTH)]
+
+
+def _bands(analysis: Analysis, room: int) -> list[str]:
+    """One line a kind of unit on its known vibrations, if there is room beside the cautions."""
+    found = band_lines(analysis)
+    lines = [line for one in found for line in wrap(one, indent=" " * (_FIELD + 2), first=" " * _FIELD)]
+    if not found:
+        return []
+    legend = _field("Bands of units", f"{LEGEND} in the crystal:")
+    if len(lines) + len(legend) > room:
+        return _field("Bands of units", "see the sections below on each unit") if room > 0 else []
+    return [*legend, *lines]
 
 
 def _file(analysis: Analysis) -> str:
