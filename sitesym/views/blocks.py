@@ -37,7 +37,7 @@ class Block:
 
 def as_text(title: str, blocks: Iterable[Block]) -> str:
     """Plain text for a terminal of 80 columns."""
-    lines = [title]
+    lines = wrap(title) if width(title) > WIDTH else [title]
     for block in blocks:
         parts = [_text_fields(block), _text_table(block), _text_notes(block)]
         body = [line for part in parts if part for line in ("", *part)]

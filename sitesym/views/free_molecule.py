@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from pathlib import PurePath
 from typing import TYPE_CHECKING
 
 from sitesym.views.blocks import Block, Table
@@ -31,9 +32,17 @@ def title(result: MoleculeAnalysis, style: Style = TEXT) -> str:
 
 
 def comparison_title(result: MoleculeComparison, style: Style = TEXT) -> str:
-    """Both formulas."""
-    first, second = (style.formula(one.formula) for one in (result.first, result.second))
-    return f"{first} {style.plain('and')} {second}, {style.plain('side by side')}"
+    """Both formulas, or one where they agree, and the names."""
+    formulas = [style.formula(one.formula) for one in (result.first, result.second)]
+    names = " and ".join(compared_names(result))
+    return f"{style.plain(' and ').join(dict.fromkeys(formulas))}: {style.plain(names)}, {style.plain('side by side')}"
+
+
+def compared_names(result: MoleculeComparison) -> tuple[str, str]:
+    """What to call the two: `A (anti)`, `B (gauche)` by their names or files, `A` and `B` where there are none."""
+    words = [one.molecule.name or PurePath(one.molecule.source).stem for one in (result.first, result.second)]
+    first, second = (f"{letter} ({word})" if word else letter for letter, word in zip("AB", words, strict=True))
+    return first, second
 
 
 # One molecule
@@ -47,7 +56,7 @@ def blocks(result: MoleculeAnalysis, style: Style = TEXT) -> tuple[Block, ...]:
     return (
         head,
         Block("", table=_answer(result, style), notes=(exclusion(result, style), *_polarized_note(result, style))),
-        Block("Vibrations", table=_vibrations(result, style), notes=_source_notes(result, style)),
+        Block("Vibrations", table=vibration_table(result, style), notes=_source_notes(result, style)),
         Block("Stretches by kind of bond", table=_stretches(result, style), notes=_stretch_notes(result, style)),
         Block("Species", table=_species(result, style)),
         Block("Atoms in the molecule's axes", table=_atoms(result, style), notes=(style.plain(_ATOMS_NOTE),)),
@@ -170,7 +179,8 @@ def _polarized_note(result: MoleculeAnalysis, style: Style) -> tuple[str, ...]:
     )
 
 
-def _vibrations(result: MoleculeAnalysis, style: Style) -> Table:
+def vibration_table(result: MoleculeAnalysis, style: Style) -> Table:
+    """One row for each species and kind of vibration, with names and wavenumbers where they are known."""
     rows = []
     for one, known in zip(result.vibrations, result.names, strict=True):
         names = ", ".join(item.name for item in known if item.name)
@@ -297,7 +307,7 @@ def _who(name: str, one: MoleculeAnalysis, style: Style) -> list[tuple[str, str]
 
 def _compared(rows: tuple[ComparedBands, ...], style: Style) -> Table:
     header = ("", "infrared", "Raman", "both", "silent", "polarized")
-    cells = tuple((style.plain(one.what), *_pairs(one)) for one in rows)
+    cells = tuple((style.plain(one.what), *_pairs(one)) for one in rows if one.first.total or one.second.total)
     return Table(tuple(map(style.plain, header)), cells, "<>>>>>", (0,))
 
 
@@ -321,10 +331,13 @@ def _coincidence(result: MoleculeComparison) -> str:
     if bool(first) == bool(second):
         return ""
     names = ("A", "B") if second else ("B", "A")
-    reason = "has a centre of inversion" if (result.second if first else result.first).has_exclusion else "shows none"
+    exclusive = (result.second if first else result.first).has_exclusion
+    reason = f"{names[0]} has a centre of inversion: no" if exclusive else "No"
+    number = max(first, second)
+    shown = f"{number} vibrations show" if number > 1 else "one vibration shows"
     return (
-        f"{names[0]} {reason}: none of its bands is at one place in infrared and Raman. A band that is, beyond "
-        f"accident, tells of {names[1]}, where {max(first, second)} are."
+        f"{reason} vibration of {names[0]} shows in both infrared and Raman; in {names[1]} {shown} in both. So a band "
+        f"found at the same wavenumber in the two spectra speaks for {names[1]}, unless two bands coincide by accident."
     )
 
 
@@ -334,5 +347,11 @@ def _line(one: ComparedBands) -> str:
 
 def _bands(found: BandCounts) -> str:
     same = "all" if found.both == found.infrared == found.raman else str(found.both)
-    both = f", {same} of them the same" if found.both else ""
+    if not found.total:
+        return "none"
+    if not found.raman:
+        return f"{found.infrared} infrared, no Raman" if found.infrared else "none that shows"
+    if not found.infrared:
+        return f"{found.raman} Raman, no infrared"
+    both = f" ({same} in both spectra)" if found.both else ""
     return f"{found.infrared} infrared and {found.raman} Raman{both}"

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 from sitesym.version import __version__
 from sitesym.views.blocks import Block, Table
-from sitesym.views.free_molecule import blocks, comparison_blocks
+from sitesym.views.free_molecule import blocks, compared_names, comparison_blocks
 from sitesym.views.labels import HTML, TEXT
 from sitesym.views.templating import environment, ready
 
@@ -113,9 +113,10 @@ def comparison_page(result: MoleculeComparison) -> str:
     ]
     formulas = [HTML.formula(one.formula) for one in (result.first, result.second)]
     groups = [HTML.schoenflies(one.point_group) for one in (result.first, result.second)]
-    title = " and ".join(TEXT.formula(one.formula) for one in (result.first, result.second))
+    title = " and ".join(dict.fromkeys(TEXT.formula(one.formula) for one in (result.first, result.second)))
+    names = " and ".join(compared_names(result))
     return _document(
-        title, "Two molecules side by side", " and ".join(formulas), "",
+        f"{title}: {names}", "Two molecules side by side", " and ".join(dict.fromkeys(formulas)), names,
         f"A: point group {groups[0]}, B: point group {groups[1]}", "", parts,
     )  # fmt: skip
 
