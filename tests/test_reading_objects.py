@@ -94,9 +94,9 @@ def test_other_objects(thing: object) -> None:
 
 
 def test_arguments_that_mean_nothing_are_refused(tmp_path: Path) -> None:
-    with pytest.raises(UsageError, match="`block` does not apply"):
+    with pytest.raises(UsageError, match="'block' does not apply"):
         read(ase_build.bulk("Cu"), block="1")
-    with pytest.raises(UsageError, match="`elements` does not apply"):
+    with pytest.raises(UsageError, match="'elements' does not apply"):
         read_text(tmp_path, cif(ROCK_SALT, symbol="P 1"), elements=("Na", "Cl"))
 
 

@@ -49,9 +49,11 @@ def read(
 
         _refuse("an object in memory", format=format, block=block, elements=elements)
         return read_object(source)
-    from sitesym.reading.source import open_source
+    from sitesym.reading.source import error_named, open_source
 
-    return _crystal(open_source(source, standard_input), format, block, whole_cell, elements)
+    given = open_source(source, standard_input)
+    with error_named(given.name):
+        return _crystal(given, format, block, whole_cell, elements)
 
 
 def read_any(
@@ -68,18 +70,19 @@ def read_any(
     argument does not suit it.
     """
     from sitesym.reading.recognise import OTHER, XYZ, recognise
-    from sitesym.reading.source import open_source
+    from sitesym.reading.source import error_named, open_source
 
     given = open_source(source, standard_input)
-    kind = recognise(given)
-    if kind == XYZ:
-        from sitesym.reading.xyz import read_xyz
+    with error_named(given.name):
+        kind = recognise(given)
+        if kind == XYZ:
+            from sitesym.reading.xyz import read_xyz
 
-        _refuse("a molecule", block=block, elements=elements)
-        return read_xyz(given.text, given.name)
-    if kind == OTHER:
-        return _crystal_or_molecule(given, block, whole_cell, elements)
-    return _crystal(given, None, block, whole_cell, elements)
+            _refuse("a molecule", block=block, elements=elements)
+            return read_xyz(given.text, given.name)
+        if kind == OTHER:
+            return _crystal_or_molecule(given, block, whole_cell, elements)
+        return _crystal(given, None, block, whole_cell, elements)
 
 
 def _crystal_or_molecule(
@@ -126,4 +129,4 @@ def _refuse(what: str, **arguments: object) -> None:
     """An argument that means nothing here is an error, not ignored."""
     for name, value in arguments.items():
         if value is not None:
-            raise UsageError(f"`{name}` does not apply to {what}.", f"Leave `{name}` out.")
+            raise UsageError(f"The option '{name}' does not apply to {what}.", "Leave it out.")

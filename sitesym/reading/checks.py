@@ -9,6 +9,7 @@ import numpy as np
 from sitesym.reading.contacts import close_contacts
 from sitesym.reading.elements import HYDROGENS
 from sitesym.reading.expectation import Expectation, pooled
+from sitesym.reading.skeleton import open_carbons
 from sitesym.reading.text import amount, counted, listed, printable
 from sitesym.structure import FULL, Floats, OpenQuestion, Site, Structure
 
@@ -53,7 +54,7 @@ def check_content(structure: Structure, expectation: Expectation) -> tuple[OpenQ
     found = pooled(structure.composition)
     expected = expectation.cell(structure.composition)
     if not expected:
-        return _water_without_hydrogen(structure)
+        return _bare_skeleton(structure) + _water_without_hydrogen(structure)
     return (
         *_hydrogen(found, expected),
         *_composition(found, expected, expectation),
@@ -158,7 +159,9 @@ def _missing_hydrogen_sites(
     found: dict[str, float], expected: dict[str, float], structure: Structure
 ) -> tuple[OpenQuestion, ...]:
     """The formula itself forgets hydrogen, which the names of the sites betray."""
-    return () if "H" in expected or "H" in found else _water_without_hydrogen(structure)
+    if "H" in expected or "H" in found:
+        return ()
+    return _bare_skeleton(structure) + _water_without_hydrogen(structure)
 
 
 def _water_without_hydrogen(structure: Structure) -> tuple[OpenQuestion, ...]:
@@ -175,6 +178,19 @@ def _water_without_hydrogen(structure: Structure) -> tuple[OpenQuestion, ...]:
             "their vibrations.",
         ),
     )
+
+
+def _bare_skeleton(structure: Structure) -> tuple[OpenQuestion, ...]:
+    """Carbon atoms with one or two neighbours, in a file without any hydrogen."""
+    carbons = open_carbons(structure)
+    if not carbons:
+        return ()
+    message = (
+        f"Hydrogen atoms seem to be missing: the file lists none, yet {carbons} carbon atoms of the cell have no more "
+        "than two neighbours, at single or aromatic distances. If hydrogen is there, every count below lacks its "
+        "vibrations."
+    )
+    return (OpenQuestion("hydrogen_missing", message),)
 
 
 def _composition(

@@ -14,8 +14,9 @@ from sitesym.reading.cif_document import Block, choose, parse
 from sitesym.reading.cif_sites import read_sites
 from sitesym.reading.cif_symmetry import find_symmetry
 from sitesym.reading.expectation import read_expectation
+from sitesym.reading.formula import unknown_symbols
 from sitesym.reading.occupancies import assemble_checked
-from sitesym.reading.text import printable
+from sitesym.reading.text import listed, printable
 from sitesym.structure import OpenQuestion, Structure
 
 _NAMES = (
@@ -44,6 +45,7 @@ def read_cif(text: str, source: str, block: str | int | None = None, whole_cell:
     questions = (
         *check_content(bare, expectation),
         *check_structure(lattice, content.fractional, content.sites),
+        *_formula_question(chosen),
         *symmetry.questions,
         *content.questions,
         *occupancy_questions,
@@ -55,6 +57,19 @@ def read_cif(text: str, source: str, block: str | int | None = None, whole_cell:
     return Structure(
         lattice, content.fractional, content.sites, symmetry.declared, by_weight(questions), name, source, "CIF"
     )
+
+
+def _formula_question(block: Block) -> tuple[OpenQuestion, ...]:
+    """The formula counts atoms of no known element, and the sites of that name were left out."""
+    types = {word.strip().rstrip("0123456789+-") for word in block.column("_atom_site_type_symbol")}
+    unknown = sorted(unknown_symbols(block.value("_chemical_formula_sum")) & types)
+    if not unknown:
+        return ()
+    message = (
+        f"The formula of the file holds {listed(unknown)}, which is no element: sites of that name were left out, and "
+        "every count below lacks their vibrations."
+    )
+    return (OpenQuestion("composition_mismatch", message),)
 
 
 def _block_questions(chosen: Block, blocks: tuple[Block, ...]) -> tuple[OpenQuestion, ...]:

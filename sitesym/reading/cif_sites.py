@@ -20,6 +20,8 @@ _FRACTIONAL = ("_atom_site_fract_x", "_atom_site_fract_y", "_atom_site_fract_z")
 _CARTESIAN = ("_atom_site_cartn_x", "_atom_site_cartn_y", "_atom_site_cartn_z")
 _LABELS = ("_atom_site_label", "_atom_site_label_atom_id", "_atom_site_auth_atom_id", "_atom_site_id")
 _OUTSIDE = 5.0
+_NO_ELEMENT = ("x", "xx", "q")
+"""Type symbols that stand for an atom of unknown kind as often as for no atom."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +41,7 @@ def read_sites(block: Block, lattice: Floats, known: Collection[str]) -> tuple[L
     Raises ReadError for a value that is no number or an element that cannot be told, NotAStructureError when no atom
     is left.
     """
-    rows, left_out, empty = _rows(block)
+    rows, left_out, unknown, empty = _rows(block)
     if not rows:
         raise NotAStructureError("No atom in the file has coordinates.", "Give a file with a refined structure.")
     elements, guessed = _elements(rows, known)
@@ -54,12 +56,16 @@ def read_sites(block: Block, lattice: Floats, known: Collection[str]) -> tuple[L
         np.array([min(row.occupancy, 1.0) for row in rows]),
         tuple(row.group for row in rows),
     )
-    questions = _left_out_questions(left_out, empty) + _guessed_question(guessed) + _excess_question(rows)
+    questions = _left_out_questions(left_out, unknown, empty) + _guessed_question(guessed) + _excess_question(rows)
     return listing, questions + frame + _outside_question(fractional)
 
 
-def _rows(block: Block) -> tuple[list[_Row], list[str], list[str]]:
-    """The atoms, the labels of those without coordinates or that are no atoms, and of those with no occupancy."""
+def _rows(block: Block) -> tuple[list[_Row], list[str], list[str], list[str]]:
+    """The atoms, and the labels of what is left out.
+
+    That is what has no coordinates or is marked as no atom, what has a type symbol that names no element, and what has
+    no occupancy.
+    """
     axes = _FRACTIONAL if block.column(_FRACTIONAL[0]) else _CARTESIAN
     columns = [block.column(tag) for tag in axes]
     size = max(map(len, columns))
@@ -72,20 +78,24 @@ def _rows(block: Block) -> tuple[list[_Row], list[str], list[str]]:
     groups = _groups(block, size)
     if any(len(column) != size for column in columns):
         raise ReadError("The coordinates of the atoms are incomplete.", "Give _atom_site_fract_x, _y and _z for all.")
-    rows, left_out, empty = [], [], []
+    rows, left_out, unknown, empty = [], [], [], []
     for index in range(size):
         label = printable(labels[index] or types[index], 60) or f"atom {index + 1}"
         kind = "" if is_unknown(types[index]) else types[index].strip()
         position = [number_of(column[index], f"{tag} of {label}") for tag, column in zip(axes, columns, strict=True)]
         occupancy = _occupancy(occupancies[index], label)
         if None in position or flags[index].lower() == "dum" or is_dummy(kind, label):
-            left_out.append(label)
+            placed = None not in position and flags[index].lower() != "dum"
+            if placed and kind.strip("0123456789").lower() in _NO_ELEMENT:
+                unknown.append(f"{label} ({printable(kind, 20)})")
+            else:
+                left_out.append(label)
         elif occupancy == 0:
             empty.append(label)
         else:
             x, y, z = (value for value in position if value is not None)
             rows.append(_Row(label, kind, (x, y, z), occupancy, groups[index]))
-    return rows, left_out, empty
+    return rows, left_out, unknown, empty
 
 
 def _column(block: Block, size: int, *tags: str) -> tuple[str, ...]:
@@ -172,10 +182,16 @@ def _entry(block: Block, name: str) -> float:
     return float("nan") if value is None else value
 
 
-def _left_out_questions(left_out: list[str], empty: list[str]) -> tuple[OpenQuestion, ...]:
+def _left_out_questions(left_out: list[str], unknown: list[str], empty: list[str]) -> tuple[OpenQuestion, ...]:
     questions = []
     if left_out:
         message = f"{counted(len(left_out), 'site')} without coordinates, or no atoms, left out: {listed(left_out)}."
+        questions.append(OpenQuestion("dummy_atoms", message))
+    if unknown:
+        message = (
+            f"{counted(len(unknown), 'site')} left out, whose type symbol names no element: {listed(unknown)}. "
+            "If atoms are there, every count below lacks their vibrations; then correct _atom_site_type_symbol."
+        )
         questions.append(OpenQuestion("dummy_atoms", message))
     if empty:
         questions.append(

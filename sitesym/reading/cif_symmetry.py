@@ -111,7 +111,7 @@ def _no_symmetry(block: Block) -> NotAStructureError:
     what = f"gives a space group {symbol!r} that is not known" if symbol else "says nothing of its symmetry"
     return NotAStructureError(
         f"The file {what}, and lists no operations.",
-        "Add the space group, or say with --whole-cell (whole_cell=True) that it lists every atom of the cell.",
+        "Add the space group, or say with --whole-cell that it lists every atom of the cell.",
     )
 
 

@@ -28,6 +28,11 @@ def parse_formula(text: str | None) -> dict[str, float]:
     return {element: count for element, count in total.items() if count > 0}
 
 
+def unknown_symbols(text: str | None) -> frozenset[str]:
+    """What is written like a chemical symbol in a formula, and is none: `Xx` in `Na Xx O3`."""
+    return frozenset(re.findall(r"[A-Z][a-z]?(?![a-z])", text or "")) - frozenset(symbols())
+
+
 def _parse_part(text: str) -> dict[str, float] | None:
     """One part without separators; None when it holds anything but elements, numbers and brackets."""
     levels: list[list[tuple[dict[str, float], float]]] = [[]]

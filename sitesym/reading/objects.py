@@ -57,7 +57,7 @@ def structure_of_atoms(atoms: Any, source: str, format: str, questions: tuple[Op
         message = f"{counted(int(dummies.sum()), 'site')} that hold no atoms left out."
         questions = (*questions, OpenQuestion("dummy_atoms", message))
         atoms = atoms[~dummies]
-    elements = _elements_of_atoms(atoms)
+    elements = _elements_of_atoms(atoms, source)
     scaled = np.array(atoms.positions, dtype=np.float64) @ np.linalg.inv(lattice)
     listing = Listing(
         lattice, scaled, numbered(elements), elements, elements, np.ones(len(elements)), ("",) * len(elements)
@@ -73,11 +73,9 @@ def molecule_of_atoms(atoms: Any, source: str) -> Molecule:
     if not hasattr(atoms, "pbc") or not hasattr(atoms, "positions"):
         raise UsageError(f"A molecule cannot be read from {type(atoms).__name__}.", "Give a path or an ase.Atoms.")
     if atoms.pbc.any():
-        raise NotAStructureError(
-            f"{source} describes a crystal, not one molecule.", "Read it as a structure, or give a file without a cell."
-        )
+        raise no_molecule(source)
     name = printable(str(atoms.info.get("name", "")))
-    return Molecule(_elements_of_atoms(atoms), np.array(atoms.positions), name, source)
+    return Molecule(_elements_of_atoms(atoms, source), np.array(atoms.positions), name, source)
 
 
 def structure_of_pymatgen(thing: Any) -> Structure:
@@ -120,6 +118,13 @@ def no_cell(source: str) -> NotAStructureError:
     )
 
 
+def no_molecule(source: str) -> NotAStructureError:
+    """The error for a crystal where a molecule is needed."""
+    return NotAStructureError(
+        f"{source} describes a crystal, not one molecule.", "Read it as a structure, or give a file without a cell."
+    )
+
+
 def _finished(listing: Listing, name: str, source: str, format: str, questions: tuple[OpenQuestion, ...]) -> Structure:
     """Merge, check and build, once the atoms of the whole cell are listed."""
     content = assemble(listing, identity())
@@ -135,10 +140,10 @@ def _finished(listing: Listing, name: str, source: str, format: str, questions: 
     )
 
 
-def _elements_of_atoms(atoms: Any) -> tuple[str, ...]:
+def _elements_of_atoms(atoms: Any, source: str) -> tuple[str, ...]:
     """Chemical symbols; hydrogen with the mass of a heavier isotope becomes D or T."""
     if len(atoms) == 0:
-        raise NotAStructureError("The object has no atoms.", "Check how it was made.")
+        raise NotAStructureError(f"{source} has no atoms.", "Give a structure with one atom at least.")
     return tuple(map(_isotope, atoms.get_chemical_symbols(), atoms.get_masses()))
 
 

@@ -21,6 +21,9 @@ _ASYMMETRIC = {
 }
 """Where such a line stands, the format lists one asymmetric unit, and ASE reads it without applying the symmetry."""
 
+_NO_NUMBER = re.compile(r"(?:could not convert string to float|invalid literal for \w+\(\)[^:]*): (.+)")
+"""How Python says that a word is no number."""
+
 _NEVER = frozenset({"cif", "vasp", "db", "mysql", "postgresql"})
 """Formats that are read here, and those that are no files."""
 
@@ -64,7 +67,7 @@ def _refuse_asymmetric_unit(given: Given, name: str) -> None:
     if mark is not None and not given.is_binary and mark.search(given.text):
         raise NotAStructureError(
             f"{given.name} lists the asymmetric unit only ({name}), which is not expanded here.",
-            "Convert it to CIF; or say with --whole-cell (whole_cell=True) that it lists every atom of the cell.",
+            "Convert it to CIF; or say with --whole-cell that it lists every atom of the cell.",
         )
 
 
@@ -89,7 +92,7 @@ def _recognise(path: Path, given: Given) -> str:
     if name not in ioformats or name in _NEVER:
         raise ReadError(
             f"The format of {given.name} is not recognised: it is no CIF, no POSCAR and none that ASE knows.",
-            "Name it with --format, if it is one of these; else convert it to CIF.",
+            "Give a CIF, POSCAR or XYZ file, or convert it to one of these.",
         )
     return name
 
@@ -106,9 +109,18 @@ def _frames(path: Path, name: str, given: Given) -> list[Any]:
     except ImportError as error:
         raise ReadError(f"To read {name} files, ASE needs {printable(str(error.name))}.", "Install it.") from None
     except (Exception, SystemExit) as error:
-        cause = printable(str(error), 80) or type(error).__name__
-        raise ReadError(f"{given.name} cannot be read as {name}: {cause}.", "Correct it, or use a CIF.") from None
+        raise ReadError(
+            f"{given.name} cannot be read as {name}: {_cause(error)}.", "Correct it, or use a CIF."
+        ) from error
     return list(found)
+
+
+def _cause(error: BaseException) -> str:
+    """What a reader of ASE complains of, without the words of the programming language."""
+    if isinstance(error, UnicodeDecodeError):
+        return "it holds characters that are no plain text"
+    match = _NO_NUMBER.search(str(error))
+    return f"{printable(match[1], 40)} stands where a number belongs" if match else "it does not keep to that format"
 
 
 def _index(frame: str | int, total: int, given: Given) -> int:

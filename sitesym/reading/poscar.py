@@ -24,6 +24,12 @@ from sitesym.structure import Floats, OpenQuestion, Structure
 _NAME = re.compile(r"([A-Z][a-z]?)(?=$|[\d_./])\S*")
 _TAIL_NAME = re.compile(r"[#!]?\s*([A-Z][a-z]?)\d*")
 _HEAD = 8
+_NO_NAMES = frozenset({
+    "the", "cell", "vectors", "lattice", "poscar", "contcar", "structure", "generated", "created", "converted",
+    "written", "made", "produced", "unknown", "untitled", "title", "comment", "system", "name", "none", "test",
+    "atoms", "unit", "primitive", "conventional", "supercell", "file", "from",
+})  # fmt: skip
+"""First words of comments that name no compound."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,10 +87,17 @@ def read_poscar(text: str, source: str, elements: Sequence[str] | None = None) -
         content.fractional,
         content.sites,
         questions=by_weight(questions),
-        name=printable(lines[0], 80),
+        name=_compound_name(lines[0]),
         source=source,
         format="POSCAR",
     )
+
+
+def _compound_name(comment: str) -> str:
+    """The comment where it may name a compound (`CaCO3 calcite`, `2H-MoS2`), else ""."""
+    name = printable(comment, 80)
+    match = re.match(r"\d{0,2}([^\W\d_]+)", name)
+    return name if match and match[1].lower() not in _NO_NAMES else ""
 
 
 def _numbers(line: str) -> list[float]:

@@ -7,10 +7,12 @@ import gzip
 import io
 import lzma
 import os
+import re
 import stat
 import sys
 import zlib
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 from typing import IO, Any
@@ -49,7 +51,14 @@ class Given:
 
     @property
     def text(self) -> str:
-        """The content as text: Unicode where it is valid, else Windows or Latin-1 (old files name authors so)."""
+        """The content as text: Unicode where it is valid, else Windows or Latin-1 (old files name authors so).
+
+        Line ends of every system become line feeds.
+        """
+        return re.sub(r"\r\n?", "\n", self._decoded)
+
+    @property
+    def _decoded(self) -> str:
         if self._mark:
             return self.data.decode(self._mark, errors="replace")
         for encoding in ("utf-8", "cp1252"):
@@ -71,6 +80,8 @@ def open_source(source: str | os.PathLike[str], standard_input: IO[Any] | None =
     """
     if os.fspath(source) == "-":
         return _unpacked(Given("standard input", _read_stream(standard_input)))
+    if os.fspath(source) == "":
+        raise ReadError("The name of the file is empty.", "Name a structure file.")
     path = Path(source)
     name = printable(str(path))
     try:
@@ -83,6 +94,19 @@ def open_source(source: str | os.PathLike[str], standard_input: IO[Any] | None =
         raise ReadError(f"{name} may not be read.", "Ask for the right to read it, or copy it.") from None
     except (OSError, ValueError) as error:
         raise ReadError(f"{name} cannot be opened: {printable(str(error))}.", "Check the path.") from None
+
+
+@contextmanager
+def error_named(name: str) -> Iterator[None]:
+    """Errors of reading tell the name of the file, wherever they arise."""
+    try:
+        yield
+    except ReadError as error:
+        if re.search(rf"(?<!\S){re.escape(name)}(?![\w/])", error.problem):
+            raise
+        plain = error.problem.removeprefix("The file ")
+        problem = f"{name}: {plain}" if plain == error.problem else f"{name} {plain}"
+        raise type(error)(problem, error.mend) from error
 
 
 def _read_path(path: Path) -> bytes:
