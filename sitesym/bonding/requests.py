@@ -18,6 +18,10 @@ from sitesym.structure import Integers
 _NEVER = (Verdict.ALTERNATIVE, Verdict.FAR_SIDE, Verdict.HYDROGEN_BOND, Verdict.METALS, Verdict.BEYOND)
 """Contacts that do not hold a requested unit together."""
 
+REQUESTED_FACTOR, REQUESTED_MARGIN = 1.35, 0.6
+"""Pairs that the user adds reach to 1.35 times the sum of covalent radii or 0.6 Å beyond it, whichever is farther: the
+former suits ionic lattices, the latter bonds of hydrogen, whose radius is small (O-H up to 1.57 Å)."""
+
 
 def parse_pair(text: str) -> Pair:
     """`Ca-O` or `Cu1-O3` as a pair; UsageError if it does not read so."""
@@ -50,8 +54,9 @@ def apply_requests(
         found = _pair_mask(pair, contacts, elements, labels) & (verdict != Verdict.ALTERNATIVE)
         if not found.any():
             raise UsageError(
-                f"There are no atoms {pair[0]} and {pair[1]} near enough to bond.",
-                "Raise the cut-off, or check the pair.",
+                f"No atoms {pair[0]} and {pair[1]} are near enough to each other to be called bonded.",
+                f"Check the pair: such a bond may have {REQUESTED_FACTOR:g} times the sum of the covalent radii, or "
+                f"{REQUESTED_MARGIN:g} Å more than the sum.",
             )
         verdict[found & (verdict >= FIRST_REFUSAL)] = Verdict.REQUESTED
     for pair in rules.forbid:
@@ -180,7 +185,7 @@ def _units_about_centres(
     if not inner.any():
         raise UsageError(
             f"There is no group of atoms {text} in this structure.",
-            "Check the formula, raise the bond cut-off, or list the labels of the atoms.",
+            "Check the formula, or list the labels of the atoms.",
         )
     return owner, inner
 

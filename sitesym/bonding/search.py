@@ -10,7 +10,7 @@ import numpy.typing as npt
 
 from sitesym.bonding.chemistry import Elements, Kind, describe, long_bonds
 from sitesym.bonding.contacts import Booleans, Contacts, find_contacts
-from sitesym.bonding.requests import apply_requests, requested_elements
+from sitesym.bonding.requests import REQUESTED_FACTOR, REQUESTED_MARGIN, apply_requests, requested_elements
 from sitesym.bonding.result import FIRST_REFUSAL, BondRules, Bonds, Verdict
 from sitesym.bonding.rule import judge
 from sitesym.bonding.scene import Scene, ratios
@@ -24,7 +24,7 @@ HYDROGEN_REACH = 1.3 / USUAL
 """The reach for hydrogen is wider by this factor: bridges (B-H 1.33 Å, F-H 1.14 Å) are longer than other bonds."""
 
 LATTICE_REACH = 1.35 / USUAL
-"""So is that of ionic lattices (PbS 1.18, PbF2 1.27, TlCl 1.34 times the sum of radii) and of pairs the user adds."""
+"""So is that of ionic lattices (PbS 1.18, PbF2 1.27, TlCl 1.34 times the sum of radii)."""
 
 TOO_NEAR = 0.75
 """Partly occupied atoms nearer than this times the sum of radii are alternatives if their occupancies allow it."""
@@ -65,11 +65,11 @@ def find_bonds(
         _fits(name, values, len(elements))
     table = describe(elements, contents)
     occupancies = [sum(content.values()) for content in contents]
-    wide = _wide(table, requested_elements(rules, elements, labels))
-    contacts = find_contacts(cell, points, table.index, _reach(table, rules.scale, wide))
+    requested = _requested_reach(table, requested_elements(rules, elements, labels))
+    contacts = find_contacts(cell, points, table.index, np.maximum(_reach(table, rules.scale), requested))
     verdict = _judged(table, contacts, rules.scale, groups, occupancies)
     if not (verdict < FIRST_REFUSAL).any():
-        contacts, verdict = _lattice_contacts(cell, points, table, rules.scale, groups, occupancies)
+        contacts, verdict = _lattice_contacts(cell, points, table, rules.scale, groups, occupancies, requested)
     if rules.speaks:
         verdict = apply_requests(contacts, verdict, rules, elements, labels)
     return _bonds(contacts, verdict, rules.scale)
@@ -89,7 +89,7 @@ def _fits(name: str, values: Sequence[object], n: int) -> None:
         raise UsageError(f"There are {n} elements but {len(values)} {name}.", "Give one for each atom.")
 
 
-def _reach(table: Elements, scale: float, wide: Booleans) -> Floats:
+def _reach(table: Elements, scale: float, wide: Booleans | None = None) -> Floats:
     """(k, k) reach of each pair of names in Å; none between ionic metals; the `wide` (k, k) ones reach farther."""
     hydrogen, ionic = table.kind == Kind.HYDROGEN, table.kind == Kind.IONIC
     factor = np.where(hydrogen[:, None] | hydrogen, HYDROGEN_REACH, 1.0)
@@ -97,23 +97,26 @@ def _reach(table: Elements, scale: float, wide: Booleans) -> Floats:
         long = np.array([[pairs.joins(one, other) for other in table.names] for one in table.names], dtype=bool)
         factor = np.where(long, pairs.reach / USUAL, factor)
     factor = np.where(ionic[:, None] & ionic, 0.0, factor)
-    factor = np.where(wide, LATTICE_REACH, factor)
+    factor = factor if wide is None else np.where(wide, LATTICE_REACH, factor)
     known = table.radius > 0
     sums = table.radius[:, None] + table.radius
     return np.asarray(np.where(known[:, None] & known, scale * factor * sums, 0.0))
 
 
-def _wide(table: Elements, pairs: set[tuple[str, str]]) -> Booleans:
-    """(k, k) mask of the pairs of names that the user adds bonds between."""
+def _requested_reach(table: Elements, pairs: set[tuple[str, str]]) -> Floats:
+    """(k, k) reach in Å of the pairs of names that the user adds bonds between, 0 for the others."""
     wanted = [[(one, other) in pairs or (other, one) in pairs for other in table.names] for one in table.names]
-    return np.array(wanted, dtype=bool)
+    sums = table.radius[:, None] + table.radius
+    reach = np.maximum(REQUESTED_FACTOR * sums, sums + REQUESTED_MARGIN)
+    known = table.radius > 0
+    return np.asarray(np.where(np.array(wanted, dtype=bool) & known[:, None] & known, reach, 0.0))
 
 
 def _judged(
     table: Elements, contacts: Contacts, scale: float, groups: Sequence[str], occupancies: Sequence[float]
 ) -> Integers:
     """Verdicts of the rule; contacts that only the user's word may turn into bonds are `BEYOND`."""
-    limit = _reach(table, scale, np.zeros((len(table.names),) * 2, dtype=bool))
+    limit = _reach(table, scale)
     near = contacts.distance < limit[table.index[contacts.first], table.index[contacts.second]]
     scene = Scene(table, table.kind[table.index], contacts.where(near))
     verdict = np.full(len(contacts), int(Verdict.BEYOND))
@@ -158,6 +161,7 @@ def _lattice_contacts(
     scale: float,
     groups: Sequence[str],
     occupancies: Sequence[float],
+    requested: Floats,
 ) -> tuple[Contacts, Integers]:
     """Rule 11: the contacts of cations with anions, or of metal atoms where there is no anion."""
     cations = np.isin(table.kind, (Kind.METAL, Kind.IONIC))
@@ -166,11 +170,11 @@ def _lattice_contacts(
     if not anions.any():
         pairs = cations[:, None] & cations
     everywhere = np.ones_like(pairs)
-    reach = np.where(pairs, _reach(table, scale, everywhere), 0.0)
-    reach = np.maximum(reach, np.where(pairs, 0.0, _reach(table, scale, ~everywhere)))
-    contacts = find_contacts(cell, points, table.index, reach)
+    reach = np.where(pairs, _reach(table, scale, everywhere), _reach(table, scale))
+    contacts = find_contacts(cell, points, table.index, np.maximum(reach, requested))
     verdict = _judged(table, contacts, scale, groups, occupancies)
-    joined = pairs[table.index[contacts.first], table.index[contacts.second]]
+    kinds = table.index[contacts.first], table.index[contacts.second]
+    joined = pairs[kinds] & (contacts.distance < reach[kinds])
     joined &= ~_alternatives(table, contacts, groups, occupancies)
     verdict[joined] = Verdict.IONIC_LATTICE
     return contacts, verdict
