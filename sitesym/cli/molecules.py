@@ -3,19 +3,18 @@
 from __future__ import annotations
 
 import argparse
+import os
 from typing import Any
 
 from sitesym.cli.shared import number
-from sitesym.errors import UsageError
+from sitesym.errors import ReadError, UsageError
 
 
 def molecule_arguments(parser: argparse.ArgumentParser) -> None:
     """How molecules and complex ions are found and named."""
     group = parser.add_argument_group("molecules and complex ions")
     group.add_argument("--unit", metavar="UNIT", action="append", default=[], help=_UNIT)
-    group.add_argument(
-        "--bond", metavar="A-B", action="append", default=[], help="count contacts as bonds: Ca-O, Cu1-O3; repeatable"
-    )
+    group.add_argument("--bond", metavar="A-B", action="append", default=[], help=_BOND)
     group.add_argument(
         "--no-bond", metavar="A-B", action="append", default=[], help="count no contact of these as a bond; repeatable"
     )
@@ -29,6 +28,11 @@ def molecule_arguments(parser: argparse.ArgumentParser) -> None:
 
 
 _UNIT = 'a unit to cut out, by formula ("CO3") or by labels of its atoms ("C1,O1,O2"); repeatable'
+_BOND = (
+    "count contacts as bonds: Ca-O, Cu1-O3; up to 1.35 times the sum of the covalent radii, or 0.6 Å more than the "
+    "sum, whichever is longer; repeatable"
+)
+_WAVENUMBER_FILE = "Name a file of wavenumbers, TOML or CSV."
 
 
 def bond_rules(arguments: argparse.Namespace) -> Any:
@@ -38,13 +42,21 @@ def bond_rules(arguments: argparse.Namespace) -> Any:
     from sitesym.bonding import BondRules, parse_pair
 
     added, forbidden = (tuple(map(parse_pair, pairs)) for pairs in (arguments.bond, arguments.no_bond))
+    wanted = {frozenset(pair) for pair in added}
+    for one, other in forbidden:
+        if frozenset((one, other)) in wanted:
+            raise UsageError(f"--bond and --no-bond both name {one}-{other}.", "Leave one of the two out.")
     return BondRules(add=added, forbid=forbidden, units=tuple(arguments.unit))
 
 
 def wavenumbers(arguments: argparse.Namespace) -> Any:
-    """The file that --wavenumbers names, None if there is none."""
+    """What the file holds that --wavenumbers names, None if there is none. Raises ReadError for a folder."""
     if arguments.wavenumbers is None:
         return None
+    if not arguments.wavenumbers:
+        raise UsageError("The name for --wavenumbers is empty.", _WAVENUMBER_FILE)
+    if os.path.isdir(arguments.wavenumbers):
+        raise ReadError(f"'{arguments.wavenumbers}' is a folder.", _WAVENUMBER_FILE)
     from sitesym.wavenumbers import read_wavenumbers
 
     return read_wavenumbers(arguments.wavenumbers)

@@ -20,8 +20,12 @@ def check_output(arguments: argparse.Namespace) -> None:
 
 def check_target(target: str | None, option: str, arguments: argparse.Namespace) -> None:
     """Refuse to overwrite what `option` names: never a file that is read, others only with --force."""
+    if target == "":
+        raise UsageError(f"The name for {option} is empty.", f"Name a file, or leave {option} out.")
     if not target or not os.path.exists(target):
         return
+    if os.path.isdir(target):
+        raise UsageError(f"'{target}' is a folder.", f"Name a file for {option}, such as one inside it.")
     for name in _INPUTS:
         given = getattr(arguments, name, None) or ()
         sources = (given,) if isinstance(given, str) else given
@@ -64,7 +68,11 @@ def _print(text: str) -> None:
 
 
 def speak_utf8() -> None:
-    """UTF-8 out, whatever the locale says; never a failure on a character."""
+    """UTF-8 out, whatever the locale says; never a failure on a character, or on a stream that the caller closed."""
+    if sys.stdout is None:
+        sys.stdout = io.StringIO()
+    if sys.stderr is None:
+        sys.stderr = io.StringIO()
     for stream in (sys.stdout, sys.stderr):
         if isinstance(stream, io.TextIOWrapper):
             stream.reconfigure(encoding="utf-8", errors="backslashreplace")

@@ -41,10 +41,7 @@ def _run(arguments: argparse.Namespace) -> str:
     if not isinstance(found, Structure):
         return _molecule_report(arguments, view, found)
     if arguments.second is not None:
-        raise UsageError(
-            "Two files stand side by side only where both are molecules without a unit cell.",
-            f"{arguments.file} is a crystal: give one file.",
-        )
+        raise _no_pair(arguments.file)
     from sitesym.analysis import analyse
 
     options = {**analysis_options(arguments), **molecule_options(arguments)}
@@ -54,15 +51,27 @@ def _run(arguments: argparse.Namespace) -> str:
 def _molecule_report(arguments: argparse.Namespace, view: Any, molecule: Any) -> str:
     """The report on one molecule, or on two side by side."""
     from sitesym.molecule_analysis import analyse_molecule, compare_molecules
-    from sitesym.reading import read_molecule
+    from sitesym.reading import read_any
+    from sitesym.structure import Structure
 
     _refuse_crystal_options(arguments)
     tolerance, bonds, given = arguments.molecule_tolerance, bond_rules(arguments), wavenumbers(arguments)
     first = analyse_molecule(molecule, tolerance, bonds, wavenumbers=given)
     if arguments.second is None:
         return str(_renderer(view, "render_molecule")(first))
-    second = analyse_molecule(read_molecule(arguments.second), tolerance, bonds, wavenumbers=given)
+    other = read_any(arguments.second)
+    if isinstance(other, Structure):
+        raise _no_pair(arguments.second)
+    second = analyse_molecule(other, tolerance, bonds, wavenumbers=given)
     return str(_renderer(view, "render_comparison")(compare_molecules(first, second)))
+
+
+def _no_pair(crystal: str) -> UsageError:
+    """The error for two files of which one is a crystal."""
+    return UsageError(
+        "Two files stand side by side only where both are molecules without a unit cell.",
+        f"{crystal} is a crystal: give one file, or two molecules.",
+    )
 
 
 def _renderer(view: Any, name: str) -> Any:

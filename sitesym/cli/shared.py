@@ -75,6 +75,11 @@ def read_structure(arguments: argparse.Namespace) -> Any:
 
 def analysis_options(arguments: argparse.Namespace) -> dict[str, Any]:
     """Options of `analyse` that `structure_arguments` asks for."""
+    if arguments.setting is not None and arguments.axes == "input":
+        raise UsageError(
+            "--setting and --axes input contradict each other: a setting chooses other axes.",
+            "Leave one of the two out.",
+        )
     options = {"axes": arguments.axes, "setting": arguments.setting}
     if arguments.tolerance is not None:
         options["tolerance"] = arguments.tolerance
