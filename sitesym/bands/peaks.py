@@ -189,7 +189,7 @@ def _spreads(step: float, points: int, widest: float) -> list[float]:
 
 
 def _filtered(level: Floats, spread: float) -> tuple[Floats, float, float]:
-    """The filtered spectrum, the standard deviation that white noise of 1 has then, and the height of a Gaussian of 1."""
+    """The filtered spectrum, the deviation of white noise of 1 after the filter, and the height of a Gaussian of 1."""
     from scipy.signal import fftconvolve
 
     half = int(np.ceil(4 * spread))

@@ -74,20 +74,14 @@ def _placed(technique: str, mine: Sequence[BandResult], style: Style) -> str:
     if not placed:
         return style.plain(f"None of the {counted(len(mine), f'{name} band')} measured is first of all a fundamental.")
     share = f"{len(placed)} are" if len(placed) > 1 else "one is"
-    opening = (
-        f"{'The one' if len(mine) == 1 else f'All {len(mine)}'} {name} {_bands(len(mine))} measured "
-        f"{'is' if len(mine) == 1 else 'are'}"
-        if len(placed) == len(mine)
-        else f"Of the {len(mine)} {name} bands measured, {share}"
-    )
-    return (
-        style.plain(f"{opening} allowed as fundamentals or components of them: ")
-        + _families(placed, style) + style.plain(" cm⁻¹.")
-    )  # fmt: skip
-
-
-def _bands(count: int) -> str:
-    return "band" if count == 1 else "bands"
+    if len(placed) < len(mine):
+        opening = f"Of the {len(mine)} {name} bands measured, {share}"
+    elif len(mine) > 1:
+        opening = f"All {len(mine)} {name} bands measured are"
+    else:
+        opening = f"The one {name} band measured is"
+    what = "fundamentals or components of them" if len(placed) > 1 else "a fundamental or a component of one"
+    return style.plain(f"{opening} allowed as {what}: ") + _families(placed, style) + style.plain(" cm⁻¹.")
 
 
 def _families(placed: Sequence[BandResult], style: Style) -> str:
@@ -156,7 +150,8 @@ def _missing_sentence(explanation: Explanation) -> str:
         for technique in TECHNIQUES
     ]
     words = [f"{count} in {name}" for name, count in counts if count]
-    return f"Of the fundamentals allowed, {listed(words)} were not seen." if words else ""
+    were = "was" if sum(count for _, count in counts) == 1 else "were"
+    return f"Of the fundamentals allowed, {listed(words)} {were} not seen." if words else ""
 
 
 def _asks_for_lowering(explanation: Explanation) -> bool:

@@ -73,7 +73,7 @@ def _notes(notes: Sequence[str]) -> list[str]:
 
 
 def _files(records: Sequence[Record]) -> list[str]:
-    return _notes([f"{printable(one.source)}: {'; '.join(one.notes) or f'{len(one.bands)} bands'}" for one in records])
+    return _notes([printable(f"{one.source}: {'; '.join(one.notes) or f'{len(one.bands)} bands'}") for one in records])
 
 
 def _cautions(explanation: Explanation) -> list[str]:

@@ -315,7 +315,7 @@ def _against(one: Lowering, explanation: Explanation) -> str:
         for technique in TECHNIQUES
         if (seen := len(of(explanation, technique)))
     ]
-    return f"that it allows {listed(parts)}"
+    return f"that it allows {listed(parts, ', and ')}"
 
 
 def lowered_words(one: Lowering, explanation: Explanation, style: Style = TEXT) -> str:
