@@ -119,6 +119,11 @@ class MoleculeAnalysis:
             f"{found.both} in both)"
         )
 
+    def _repr_html_(self) -> str:
+        from sitesym.views.notebook import molecule_html
+
+        return molecule_html(self)
+
     @property
     def point_group(self) -> str:
         """Schoenflies symbol: `C2h`, `D∞h`, `Ih`; `Kh` for a single atom."""

@@ -120,6 +120,11 @@ class Structure:
     def __repr__(self) -> str:
         return f"Structure({self.formula}, {len(self)} sites in the cell, {self.format or 'no file'})"
 
+    def _repr_html_(self) -> str:
+        from sitesym.views.notebook import structure_html
+
+        return structure_html(self)
+
     @property
     def volume(self) -> float:
         """Cell volume in Å³."""
