@@ -37,7 +37,7 @@ class Block:
 
 def as_text(title: str, blocks: Iterable[Block]) -> str:
     """Plain text for a terminal of 80 columns."""
-    lines = wrap(title) if width(title) > WIDTH else [title]
+    lines = [part for line in title.split("\n") for part in (wrap(line) if width(line) > WIDTH else [line])]
     for block in blocks:
         parts = [_text_fields(block), _text_table(block), _text_notes(block)]
         body = [line for part in parts if part for line in ("", *part)]
