@@ -43,13 +43,13 @@ seen. Bands were put to what symmetry allows with sitesym"""
 TABLE = """\
 Bands
 ─────
-  cm⁻¹    ±  in        place     first reason  species  or
- 281.2    1  Raman     external  fundamental   Eg
-711.46  0.3  Raman     ν4        fundamental   Eg
-  1086    1  Raman     ν1        fundamental   A₁g
-  1749    2  Raman     ·         overtone 2ν2  A₁g, Eg  lower symmetry
-   712    2  infrared  ν4        fundamental   Eu
-  2349    4  infrared  ·         air           ·
+  cm⁻¹    ±  in        geometry  place     first reason  species  or
+ 281.2    1  Raman     ·         external  fundamental   Eg
+711.46  0.3  Raman     z(xy)z̄    ν4        fundamental   Eg
+  1086    1  Raman     ·         ν1        fundamental   A₁g
+  1749    2  Raman     ·         ·         overtone 2ν2  A₁g, Eg  lower symmetry
+   712    2  infrared  ·         ν4        fundamental   Eu
+  2349    4  infrared  ·         ·         air           ·
 """
 
 REST = """\

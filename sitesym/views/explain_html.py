@@ -19,7 +19,7 @@ from sitesym.views.labels import HTML, TEXT, decomposition
 from sitesym.views.templating import environment, ready
 
 if TYPE_CHECKING:
-    from sitesym.bands.explanation import Explanation
+    from sitesym.bands.explanation import BandResult, Explanation
     from sitesym.bands.inventory import Family
     from sitesym.bands.reading import Record
 
@@ -92,12 +92,14 @@ def render(explanation: Explanation, records: Sequence[Record] = ()) -> str:
 def _tally(explanation: Explanation) -> list[tuple[str, str, str]]:
     """For each technique bands and how many have a place; then those left over."""
     rows = []
+    others: list[BandResult] = []
     for technique in TECHNIQUES:
         mine = words.of(explanation, technique)
         if mine:
-            placed = sum(words.has_place(one) for one in mine)
-            rows.append((words.NAMES[technique].capitalize(), str(len(mine)), f"{placed} fundamentals or components"))
-    others = [one for one in explanation.bands if not words.has_place(one)]
+            leads = [members[0] for members in words.modes(mine)]
+            placed = sum(words.has_place(one) for one in leads)
+            others += [one for one in leads if not words.has_place(one)]
+            rows.append((words.NAMES[technique].capitalize(), str(len(leads)), f"{placed} fundamentals or components"))
     unexplained = sum(one.reasons[0].cause == "unexplained" for one in others)
     rows.append(("Others", str(len(others)), f"{unexplained or 'none'} of them unexplained" if others else ""))
     return rows
@@ -106,7 +108,7 @@ def _tally(explanation: Explanation) -> list[tuple[str, str, str]]:
 def _ready_row(row: words.BandRow) -> words.BandRow:
     return replace(
         row, technique=ready(row.technique), place=ready(row.place), reason=ready(row.reason),
-        species=ready(row.species), doubt=ready(row.doubt), note=ready(row.note),
+        geometry=ready(row.geometry), species=ready(row.species), doubt=ready(row.doubt), note=ready(row.note),
     )  # fmt: skip
 
 

@@ -19,6 +19,7 @@ from sitesym.views.explain_words import (
     has_place,
     listed,
     lowered_words,
+    modes,
     number,
     of,
     typeset,
@@ -69,17 +70,18 @@ def _number(count: int) -> str:
 
 def _placed(technique: str, mine: Sequence[BandResult], style: Style) -> str:
     """`Of the 6 Raman bands measured, 5 are allowed as fundamentals or components of them: ...`."""
-    placed = [one for one in mine if has_place(one)]
-    name = NAMES[technique]
+    leads = [members[0] for members in modes(mine)]
+    placed = [one for one in leads if has_place(one)]
+    count, name = len(leads), NAMES[technique]
+    geometries = len({one.band.geometry for one in mine if one.band.geometry})
+    measured = "measured" + (f" in {geometries} geometries" if geometries > 1 else "")
     if not placed:
-        return style.plain(f"None of the {counted(len(mine), f'{name} band')} measured is first of all a fundamental.")
-    share = f"{len(placed)} are" if len(placed) > 1 else "one is"
-    if len(placed) < len(mine):
-        opening = f"Of the {len(mine)} {name} bands measured, {share}"
-    elif len(mine) > 1:
-        opening = f"All {len(mine)} {name} bands measured are"
+        return style.plain(f"None of the {counted(count, f'{name} band')} {measured} is first of all a fundamental.")
+    if len(placed) < count:
+        share = f"{len(placed)} are" if len(placed) > 1 else "one is"
+        opening = f"Of the {count} {name} bands {measured}, {share}"
     else:
-        opening = f"The one {name} band measured is"
+        opening = f"All {count} {name} bands {measured} are" if count > 1 else f"The one {name} band {measured} is"
     what = "fundamentals or components of them" if len(placed) > 1 else "a fundamental or a component of one"
     return style.plain(f"{opening} allowed as {what}: ") + _families(placed, style) + style.plain(" cm⁻¹.")
 
@@ -102,18 +104,28 @@ def _families(placed: Sequence[BandResult], style: Style) -> str:
 
 
 def _others(explanation: Explanation, technique: str, mine: Sequence[BandResult], style: Style) -> list[str]:
-    others = [one for one in mine if not has_place(one)]
+    groups = modes(mine)
+    others = [
+        one for members in groups for one in (members if has_place(members[0]) else members[:1]) if not has_place(one)
+    ]
     if not others:
         return []
     clauses = []
     for clause, members in _same_clause(others[:_LISTED]):
-        values = listed([number(one.band) for one in members])
+        values = typeset(listed([_with_geometry(one) for one in members]), explanation, style)
         verb = clause if len(members) == 1 else _plural(clause)
-        clauses.append(style.plain(f"{values} cm⁻¹ ") + typeset(verb, explanation, style))
+        clauses.append(values + style.plain(" ") + typeset(verb, explanation, style))
     more = f"; for {len(others) - _LISTED} more see the table" if len(others) > _LISTED else ""
-    whole = len(others) == len(mine)
-    opening = "Of them, " if whole else "Of the rest, "
+    opening = "Of them, " if len(others) == len(groups) else "Of the rest, "
+    if all(has_place(members[0]) for members in groups):
+        opening = "Besides, "
     return [style.plain(opening) + style.plain("; ").join(clauses) + style.plain(f"{more}.")]
+
+
+def _with_geometry(result: BandResult) -> str:
+    """`1086 cm⁻¹ in z(xy)-z` where the geometry matters to the reason, else `1086 cm⁻¹`."""
+    leaks = result.reasons[0].cause == "leakage"
+    return f"{number(result.band)} cm⁻¹" + (f" in {result.band.geometry}" if leaks else "")
 
 
 def _same_clause(others: Sequence[BandResult]) -> Iterable[tuple[str, list[BandResult]]]:
@@ -127,7 +139,7 @@ def _clause(reason: Reason) -> str:
     if reason.cause == "unexplained":
         return "remains unexplained"
     if reason.cause == "leakage":
-        return "is forbidden in its geometry and may be leakage"
+        return "is forbidden and may be leakage"
     if reason.cause == "symmetry_lowering":
         return "would need a lower symmetry"
     if reason.cause == "disorder":

@@ -45,12 +45,18 @@ def render(explanation: Explanation, records: Sequence[Record] = ()) -> str:
 
 def _bands(explanation: Explanation) -> list[str]:
     """Band by band: place, first reason, its species, and what else is worth a thought."""
-    header = ("cm⁻¹", "±", "in", "place", "first reason", "species", "or")
-    rows = [
-        (row.wavenumber, row.uncertainty, row.technique, row.place or ZERO, row.reason, row.species or ZERO, row.doubt)
+    header: tuple[str, ...] = ("cm⁻¹", "±", "in", "geometry", "place", "first reason", "species", "or")
+    rows: list[tuple[str, ...]] = [
+        (
+            row.wavenumber, row.uncertainty, row.technique, row.geometry or ZERO, row.place or ZERO, row.reason,
+            row.species or ZERO, row.doubt,
+        )
         for row in band_rows(explanation)
-    ]
-    return table([header, *rows], ">><<<<<", shrink=(3, 6, 4))
+    ]  # fmt: skip
+    if not any(one.band.geometry for one in explanation.bands):
+        header, rows = (*header[:3], *header[4:]), [(*row[:3], *row[4:]) for row in rows]
+        return table([header, *rows], ">><<<<<", shrink=(3, 6, 4))
+    return table([header, *rows], ">><<<<<<", shrink=(4, 7, 5))
 
 
 def _arguments(explanation: Explanation) -> list[str]:

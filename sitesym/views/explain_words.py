@@ -9,9 +9,11 @@ from functools import lru_cache
 from itertools import groupby
 from typing import TYPE_CHECKING
 
+from sitesym.bands.explanation import same_bands
 from sitesym.bands.measurement import TECHNIQUES
 from sitesym.known_units import composition_of
 from sitesym.views.labels import TEXT, Style
+from sitesym.views.plan_symbols import direction
 from sitesym.views.sentences import fill
 
 if TYPE_CHECKING:
@@ -43,8 +45,12 @@ _WORD = r"(?<![\w'])(?:{})(?![\w'])"
 
 def typeset(text: str, explanation: Explanation, style: Style) -> str:
     """A sentence of the result with species, groups and formulas set in the style, all else made safe for it."""
+    geometries = frozenset(one.band.geometry for one in explanation.bands if one.band.geometry)
     labels, groups, formulas = _symbols(explanation)
-    found = [(labels, style.species), (groups, style.schoenflies), (formulas, style.formula)]
+    found: list[tuple[frozenset[str], Callable[[str], str]]] = [
+        (geometries, lambda typed: direction(typed, style)), (labels, style.species), (groups, style.schoenflies),
+        (formulas, style.formula),
+    ]  # fmt: skip
     return _set(text, [(names, maker) for names, maker in found if names], style)
 
 
@@ -148,6 +154,21 @@ def of(explanation: Explanation, technique: str) -> list[BandResult]:
     return [one for one in explanation.bands if one.band.technique == technique]
 
 
+def modes(results: Sequence[BandResult]) -> list[list[BandResult]]:
+    """The bands of one technique, each with all geometries that it was seen in; the one that tells its place first."""
+    first = same_bands([one.band for one in results])
+    groups: dict[int, list[BandResult]] = {}
+    for one, start in zip(results, first, strict=True):
+        groups.setdefault(start, []).append(one)
+    return [sorted(members, key=lambda one: not has_place(one)) for members in groups.values()]
+
+
+def geometries_words(geometries: Sequence[str], style: Style = TEXT) -> str:
+    """`z(xx)z̄ and z(xy)z̄`."""
+    made = [direction(one, style) for one in geometries]
+    return style.plain(" and ").join([style.plain(", ").join(made[:-1]), made[-1]]) if len(made) > 1 else made[0]
+
+
 def has_place(result: BandResult) -> bool:
     """Whether it is first of all a fundamental or a component of one."""
     return result.is_allowed and result.reasons[0].cause in OF_PLACE
@@ -163,6 +184,7 @@ class BandRow:
     wavenumber: str
     uncertainty: str
     technique: str
+    geometry: str
     place: str
     reason: str
     species: str
@@ -180,13 +202,12 @@ def band_rows(explanation: Explanation, style: Style = TEXT) -> tuple[BandRow, .
 def _band_row(result: BandResult, alone: bool, style: Style) -> BandRow:
     band, first = result.band, result.reasons[0]
     family = result.placed.family
-    note = ", ".join(filter(None, (band.geometry, band.note)))
     doubt = next((one for one in result.reasons[1:] if one.cause != first.cause and _is_worth(one, first)), None)
     return BandRow(
-        number(band), f"{band.uncertainty:.2g}", style.plain(NAMES[band.technique]),
+        number(band), f"{band.uncertainty:.2g}", style.plain(NAMES[band.technique]), direction(band.geometry, style),
         _place(family, alone, style) if family else "", style.plain(reason_words(first)),
         _species(first, style), style.plain(cause_words(doubt)) if doubt else "",
-        style.plain(note), not has_place(result),
+        style.plain(band.note), not has_place(result),
     )  # fmt: skip
 
 
@@ -239,10 +260,13 @@ def arguments(explanation: Explanation, style: Style = TEXT) -> tuple[Arguments,
     for _, group in groupby(explanation.bands, key=_same_reasons):
         members = list(group)
         technique = NAMES[members[0].band.technique]
-        values = ", ".join(number(one.band) for one in members)
+        values = ", ".join(dict.fromkeys(number(one.band) for one in members))
+        geometries = list(dict.fromkeys(one.band.geometry for one in members))
+        seen = style.plain(" in ") + geometries_words(geometries, style) if all(geometries) else ""
         place = "" if members[0].is_allowed else ", without a place among the fundamentals"
         reasons = tuple(_argument(one, explanation, style) for one in _worth(members[0]))
-        found.append(Arguments(style.plain(f"{technique} {values} cm⁻¹{place}"), reasons))
+        head = style.plain(f"{technique} {values} cm⁻¹") + seen + style.plain(place)
+        found.append(Arguments(head, reasons))
     return tuple(found)
 
 
@@ -313,7 +337,7 @@ def _against(one: Lowering, explanation: Explanation) -> str:
         f"{allowed[technique][1]} fundamentals in {NAMES[technique]} (assumed symmetry {allowed[technique][0]}), where "
         f"{counted(seen, 'band')} {'was' if seen == 1 else 'were'} seen"
         for technique in TECHNIQUES
-        if (seen := len(of(explanation, technique)))
+        if (seen := len(modes(of(explanation, technique))))
     ]
     return f"that it allows {listed(parts, ', and ')}"
 

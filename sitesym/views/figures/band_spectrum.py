@@ -8,11 +8,11 @@ reason is no fundamental stand out in the colour of emphasis, with that reason.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from sitesym.bands.measurement import TECHNIQUES
-from sitesym.views.explain_words import NAMES, family_words, has_place, number, of, reason_words
+from sitesym.views.explain_words import NAMES, family_words, has_place, modes, number, of, reason_words
 from sitesym.views.figures.band_scale import SIDE, Scale, axis, scale_of
 from sitesym.views.figures.band_trace import TALL, heights, trace
 from sitesym.views.figures.spread import spread, stacked
@@ -61,8 +61,21 @@ def band_spectrum(explanation: Explanation, records: Sequence[Record] = (), name
 def _scale(explanation: Explanation, targets: dict[str, list[_Target]]) -> Scale:
     places = [one.band.wavenumber for one in explanation.bands]
     places += [target.wavenumber for found in targets.values() for target in found]
-    slots = max(max(len(of(explanation, technique)), len(found)) for technique, found in targets.items())
+    slots = max(max(len(_leads(explanation, technique)), len(found)) for technique, found in targets.items())
     return scale_of(places, max(_WIDTH, 2 * SIDE + stacked([_SLOT] * slots, 0)[1]))
+
+
+def _leads(explanation: Explanation, technique: str) -> list[BandResult]:
+    """Every band once, whatever the number of geometries that show it, as high as in the strongest."""
+    return [_strongest(members) for members in modes(of(explanation, technique))]
+
+
+def _strongest(members: Sequence[BandResult]) -> BandResult:
+    lead = members[0]
+    intensities = [one.band.intensity for one in members if one.band.intensity is not None]
+    if len(members) == 1 or not intensities:
+        return lead
+    return replace(lead, placed=replace(lead.placed, band=replace(lead.band, intensity=max(intensities))))
 
 
 # What is predicted
@@ -70,7 +83,7 @@ def _scale(explanation: Explanation, targets: dict[str, list[_Target]]) -> Scale
 
 def _targets(explanation: Explanation, technique: str) -> list[_Target]:
     """Families that the technique shows, and the reasons of bands that are no fundamentals first of all."""
-    mine = of(explanation, technique)
+    mine = _leads(explanation, technique)
     families = [family for family in explanation.families if family.capacity(technique)]
     with_bands = [family for family in families if any(one.placed.family is family for one in mine if has_place(one))]
     if len(families) > _MOST_FAMILIES:
@@ -105,7 +118,7 @@ def _panel(
     top: float,
 ) -> tuple[list[str], float]:  # fmt: skip
     """One technique, and how high it is."""
-    mine = of(explanation, technique)
+    mine = _leads(explanation, technique)
     floor = top + 16 + _LABEL + _LEADER + TALL
     row = floor + _AXIS + _FAN
     room = max((symbols_width(target.words, _FONT) for target in targets), default=0.0)
@@ -218,7 +231,7 @@ def _description(explanation: Explanation, shown: Sequence[str]) -> str:
                 if has_place(one) and one.placed.family
                 else reason_words(one.reasons[0])
             )
-            for one in of(explanation, technique)
+            for one in _leads(explanation, technique)
         )
         parts.append(f"{NAMES[technique].capitalize()}: {bands}.")
     return f"{' '.join(parts)} In cm⁻¹, from high to low."
