@@ -22,7 +22,6 @@ from sitesym.tensors import TensorSpecies, tensor_species
 from sitesym.units import customary
 from sitesym.wavenumbers import Wavenumbers
 
-
 AXES = ("auto", "input", "standard")
 """Which axes a report may follow: see `analyse`."""
 
