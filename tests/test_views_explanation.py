@@ -59,10 +59,10 @@ Raman 1749 cm⁻¹, without a place among the fundamentals
    2. lower symmetry: would need the symmetry to be lowered to D₃, which allows
       more.
 
-infrared 712 cm⁻¹
+Infrared 712 cm⁻¹
    1. fundamental: allowed as the fundamental CO₃ ν4 (E′).
 
-infrared 2349 cm⁻¹, without a place among the fundamentals
+Infrared 2349 cm⁻¹, without a place among the fundamentals
    1. air: near 2349 cm⁻¹, where air has a line: carbon dioxide.
       test: purge
 

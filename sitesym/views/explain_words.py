@@ -265,7 +265,7 @@ def arguments(explanation: Explanation, style: Style = TEXT) -> tuple[Arguments,
         seen = style.plain(" in ") + geometries_words(geometries, style) if all(geometries) else ""
         place = "" if members[0].is_allowed else ", without a place among the fundamentals"
         reasons = tuple(_argument(one, explanation, style) for one in _worth(members[0]))
-        head = style.plain(f"{technique} {values} cm⁻¹") + seen + style.plain(place)
+        head = style.plain(f"{technique[:1].upper()}{technique[1:]} {values} cm⁻¹") + seen + style.plain(place)
         found.append(Arguments(head, reasons))
     return tuple(found)
 
@@ -304,7 +304,7 @@ def _missing_note(technique: str, reasons: Sequence[str], members: Sequence[Miss
     listed = style.plain(", ").join(
         family_words(one.family, style) + style.plain(f" ({one.seen} of {one.allowed} seen)") for one in members
     )
-    return style.plain(f"{NAMES[technique]}: ") + listed + style.plain(f". {_sentence('; '.join(reasons))}")
+    return style.plain(f"{NAMES[technique].capitalize()}: ") + listed + style.plain(f". {_sentence('; '.join(reasons))}")
 
 
 def _sentence(words: str) -> str:
