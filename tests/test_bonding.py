@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 from ase import Atoms
 from ase.neighborlist import neighbor_list
-from crystals import reference
+from literature import reference
 from pymatgen.core.bond_valence import BV_PARAMS
 from unit_crystals import in_a_box, listed
 

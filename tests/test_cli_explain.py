@@ -255,3 +255,15 @@ def test_help_needs_no_heavy_library() -> None:
     assert done.returncode == 0
     for option in (b"--raman", b"--infrared", b"--suspect", b"--pins", b"--wavenumbers", b"--picked", b"--laser"):
         assert option in done.stdout
+
+
+def test_a_pin_leaves_the_other_technique_alone(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """A Raman band pinned to ν1, which infrared does not show, and an infrared band of ν2 within its uncertainty."""
+    lists = {"raman": "wavenumber,uncertainty\n880,4\n", "infrared": "wavenumber,uncertainty\n878,4\n"}
+    for name, text in lists.items():
+        (tmp_path / name).write_text(text)
+    pins = tmp_path / "pins.txt"
+    pins.write_text("pin 880 CO3 ν1\n")
+    given = [word for name in lists for word in (f"--{name}", str(tmp_path / name))]
+    found = document(capsys, CALCITE, *given, "--pins", str(pins), "--no-scan")
+    assert (place(found, 880.0), place(found, 878.0)) == ("CO3 ν1", "CO3 ν2")

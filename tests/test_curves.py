@@ -6,8 +6,8 @@ from functools import lru_cache
 
 import numpy as np
 import pytest
-from crystals import of_entry, reference
 from formula_reader import evaluated, is_exact
+from literature import of_entry, reference
 from scipy.spatial.transform import Rotation
 
 from sitesym.analysis import Analysis, analyse

@@ -6,7 +6,7 @@ from functools import lru_cache
 
 import numpy as np
 import pytest
-from crystals import of_entry, reference
+from literature import of_entry, reference
 
 from sitesym.analysis import Analysis, analyse
 from sitesym.errors import UsageError

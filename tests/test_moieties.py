@@ -9,7 +9,7 @@ from pathlib import Path
 
 import gemmi
 import pytest
-from crystals import reference
+from literature import reference
 from moieties import agree, found, stated, words
 
 from sitesym.reading import read

@@ -12,7 +12,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from crystals import expanded, of_entry, reference
+from literature import expanded, of_entry, reference
 
 from sitesym.analysis import Analysis, analyse
 from sitesym.experiment.shown import GeometryResult, what_it_shows

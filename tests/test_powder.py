@@ -15,8 +15,8 @@ from typing import Any
 import gemmi
 import numpy as np
 import pytest
-from crystals import of_entry, reference
 from formula_reader import evaluated
+from literature import of_entry, reference
 from scipy.spatial.transform import Rotation
 
 from sitesym.analysis import Analysis, analyse

@@ -9,7 +9,7 @@ import pytest
 from ase import Atoms
 from ase.collections import g2
 from ase.neighborlist import neighbor_list
-from crystals import reference
+from literature import reference
 from pymatgen.analysis.dimensionality import get_structure_components
 from pymatgen.analysis.graphs import StructureGraph
 from pymatgen.core import Lattice

@@ -4,7 +4,7 @@ from typing import Any
 
 import gemmi
 import numpy as np
-from crystals import cell_vectors, distance, reference
+from literature import cell_vectors, distance, reference
 
 from sitesym.structure import Occupant, Site, Structure
 

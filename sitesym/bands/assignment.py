@@ -63,6 +63,8 @@ def _assign_one(
 
     if not bands:
         return []
+    shown = {family.name for family in families if family.capacity(technique)}
+    pinned = [pin for pin in pinned if pin[1] in shown]  # others speak of a band of the other technique
     base = np.array([[_cost(band, family, technique, pinned, forbidden) for family in families] for band in bands])
     base = base.reshape(len(bands), len(families)) + np.array([[_weakness(band, bands)] for band in bands])
     slots = [(k, n) for k, family in enumerate(families) for n in range(min(family.capacity(technique), len(bands)))]
