@@ -78,10 +78,10 @@ def _sum(group: PointGroup, band: Band, one: Parent, two: Parent) -> list[Reason
     species = allowed_species(group, one, two, band.technique)
     if not species:
         return []
-    same = one.family is two.family and one.family.is_internal
+    same = one is two or (one.family is two.family and one.family.is_internal)
     internal = one.family.is_internal and two.family.is_internal
     prior = (0.62 if same else 0.5) * (1.0 if internal else 0.55)
-    name = f"2{one.family.vibration}" if same else f"{one.family.vibration} + {two.family.vibration}"
+    name = _level_name(one, two, same)
     argument = (
         f"allowed as {name} of {_units(one, two)}: {one.wavenumber:g} + {two.wavenumber:g} = {expected:g} cm⁻¹, and "
         f"the product of their species contains {', '.join(species[:4])}"
@@ -89,6 +89,13 @@ def _sum(group: PointGroup, band: Band, one: Parent, two: Parent) -> list[Reason
     cause = "overtone" if same else "combination"
     test = "its intensity changes with temperature and isotopic substitution as that of its parents together"
     return [Reason(cause, prior * fit, argument, (one.wavenumber, two.wavenumber), species, test)]
+
+
+def _level_name(one: Parent, two: Parent, same: bool) -> str:
+    """`2ν2`, `ν1 + ν4`; an overtone of a mode without a name by its wavenumber."""
+    if not same:
+        return f"{one.family.vibration} + {two.family.vibration}"
+    return f"2{one.family.vibration}" if one.family.is_internal else f"the overtone of {one.wavenumber:g} cm⁻¹"
 
 
 def _difference(group: PointGroup, band: Band, one: Parent, two: Parent) -> list[Reason]:
