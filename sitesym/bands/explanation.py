@@ -23,6 +23,7 @@ from sitesym.bands.surroundings import (
     lowering_reasons,
     phase_reasons,
     room_reasons,
+    site_reasons,
     unexplained,
 )
 from sitesym.errors import UsageError
@@ -165,6 +166,7 @@ def _reasons(
         *level_reasons(analysis, band, parents),
         *disorder_reasons(analysis, band, families),
         *lowering_reasons(analysis, band, lower, families),
+        *site_reasons(analysis, band, families),
         *_beyond(one, families, others),
         unexplained(band),
     ]

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from math import hypot
 
 from sitesym.analysis import Analysis
 from sitesym.bands.assignment import Placed, assign
@@ -55,12 +56,33 @@ def lowerings(
             continue
         lowered = _lowered(analysis.factor_group, subgroup, families)
         again = assign(bands, lowered)
-        fails = tuple(one.band for one in again if one.family is None)
+        crowded = _crowded(again)
+        fails = tuple(one.band for one in again if one.family is None or one.band in crowded)
         explains = tuple(band for band in left if band not in fails)
         if explains and not _is_implied(subgroup, explains, found):
             allowed = [sum(family.capacity(technique) for family in lowered) for technique in ("infrared", "raman")]
             found.append(Lowering(subgroup, explains, fails, allowed[0], allowed[1]))
     return tuple(sorted(found, key=lambda one: (len(one.fails), -one.subgroup.order)))[:4]
+
+
+def _crowded(placed: Sequence[Placed]) -> set[Band]:
+    """Bands too many for their family: a mode active in both techniques has one wavenumber, not two.
+
+    Raman and infrared bands of a family that coincide are one; what is left must not outnumber the active components.
+    """
+    too_many: set[Band] = set()
+    for family in dict.fromkeys(one.family for one in placed if one.family is not None):
+        bands = [one.band for one in placed if one.family is family]
+        distinct = [band for k, band in enumerate(bands) if not any(_coincide(band, other) for other in bands[:k])]
+        room = sum(part.count for part in family.components if not part.activity.silent)
+        too_many.update(distinct[room:])
+    return too_many
+
+
+def _coincide(one: Band, two: Band) -> bool:
+    return one.technique != two.technique and abs(one.wavenumber - two.wavenumber) <= hypot(
+        one.uncertainty, two.uncertainty
+    )
 
 
 def _is_implied(subgroup: Subgroup, explains: tuple[Band, ...], found: Sequence[Lowering]) -> bool:

@@ -14,6 +14,7 @@ from sitesym.bands.inventory import Family
 from sitesym.bands.lowering import Lowering
 from sitesym.bands.measurement import Band
 from sitesym.bands.reasons import Reason
+from sitesym.bands.site_lowering import nearest_forbidden, site_lowerings
 
 
 @dataclass(frozen=True, eq=False)
@@ -145,14 +146,14 @@ def lowering_reasons(
 ) -> list[Reason]:
     """Loss of the assumed symmetry, for bands that the highest such groups would give a place."""
     reasons = []
-    name, closeness = _forbidden_here(band, families)
+    family, closeness = nearest_forbidden(band, families)
     for rank, one in enumerate(lowerings):
         if band not in one.explains:
             continue
         argument = (
             f"would need the symmetry to be lowered to {one.name}, which allows {one.infrared} infrared and "
             f"{one.raman} Raman bands and gives {len(one.explains)} of the bands left over a place"
-            + (f"; {name} is forbidden in this technique and lies here" if name else "")
+            + (f"; {family.name} is forbidden in this technique and lies here" if family else "")
         )
         score = (0.34 + 0.08 * min(len(one.explains) - 1, 4) + 0.24 * closeness) / (1 + 0.5 * rank)
         score *= 1.0 if analysis.factor_group.has_inversion else _WITHOUT_INVERSION
@@ -161,16 +162,20 @@ def lowering_reasons(
     return reasons
 
 
-def _forbidden_here(band: Band, families: Sequence[Family]) -> tuple[str, float]:
-    """The nearest fundamental of known wavenumber that the technique forbids, and how near it is (0 to 1)."""
-    best, name = 0.0, ""
-    for family in families:
-        if family.wavenumber is None or family.capacity(band.technique):
-            continue
-        off = abs(band.wavenumber - family.wavenumber) / (12 + 0.012 * family.wavenumber)
-        if 1 - off / 3 > best:
-            best, name = 1 - off / 3, family.name
-    return name, best
+def site_reasons(analysis: Analysis, band: Band, families: Sequence[Family]) -> list[Reason]:
+    """Loss of symmetry at the site of one unit, for the forbidden fundamental that lies at the band."""
+    family, closeness = nearest_forbidden(band, families)
+    if family is None:
+        return []
+    reasons = []
+    for one in site_lowerings(analysis, family, band.technique):
+        argument = (
+            f"would need some {family.unit} to stand on a site of lower symmetry, {one.left} in place of {one.assumed}, "
+            f"which allows {family.vibration}: an impurity, a vacancy or a surface would do, the crystal kept as it is"
+        )
+        test = "the band is weak, and its strength follows the impurity or the treatment of the sample"
+        reasons.append(Reason("symmetry_lowering", 0.3 * closeness, argument, (), (), test))
+    return reasons
 
 
 def unexplained(band: Band) -> Reason:
