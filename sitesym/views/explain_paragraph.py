@@ -53,19 +53,16 @@ def paragraph(explanation: Explanation, style: Style = TEXT) -> str:
 def _opening(explanation: Explanation, style: Style) -> str:
     analysis = explanation.analysis
     totals = analysis.totals
-    both = f", {totals.infrared_and_raman} of them in both." if totals.infrared_and_raman else "."
+    both = f", {totals.infrared_and_raman} of them in both" if totals.infrared_and_raman else ""
     return fill(
         style,
-        f"For {{formula}} in space group {{group}}, factor group {{factor}}, symmetry allows {_number(totals.raman)} "
-        f"fundamentals in Raman and {_number(totals.infrared)} in infrared{both}",
+        f"For {{formula}} in space group {{group}}, factor group {{factor}}, symmetry allows "
+        f"{counted(totals.raman, 'fundamental') if totals.raman else 'no fundamental'} in Raman and "
+        f"{totals.infrared or 'none'} in infrared{both}.",
         formula=style.formula(compound_of(explanation)),
         group=space_group_words(analysis, style),
         factor=style.schoenflies(analysis.factor_group.schoenflies),
     )
-
-
-def _number(count: int) -> str:
-    return str(count) if count else "no"
 
 
 def _placed(technique: str, mine: Sequence[BandResult], style: Style) -> str:
@@ -112,7 +109,7 @@ def _others(explanation: Explanation, technique: str, mine: Sequence[BandResult]
         return []
     clauses = []
     for clause, members in _same_clause(others[:_LISTED]):
-        values = typeset(listed([_with_geometry(one) for one in members]), explanation, style)
+        values = typeset(_with_geometry(members), explanation, style)
         verb = clause if len(members) == 1 else _plural(clause)
         clauses.append(values + style.plain(" ") + typeset(verb, explanation, style))
     more = f"; for {len(others) - _LISTED} more see the table" if len(others) > _LISTED else ""
@@ -122,10 +119,11 @@ def _others(explanation: Explanation, technique: str, mine: Sequence[BandResult]
     return [style.plain(opening) + style.plain("; ").join(clauses) + style.plain(f"{more}.")]
 
 
-def _with_geometry(result: BandResult) -> str:
-    """`1086 cm⁻¹ in z(xy)-z` where the geometry matters to the reason, else `1086 cm⁻¹`."""
-    leaks = result.reasons[0].cause == "leakage"
-    return f"{number(result.band)} cm⁻¹" + (f" in {result.band.geometry}" if leaks else "")
+def _with_geometry(members: Sequence[BandResult]) -> str:
+    """`1749 and 1797 cm⁻¹`; `1086 cm⁻¹ in z(xy)-z` where the geometry matters to the reason."""
+    if members[0].reasons[0].cause != "leakage":
+        return f"{listed([number(one.band) for one in members])} cm⁻¹"
+    return listed([f"{number(one.band)} cm⁻¹ in {one.band.geometry}" for one in members])
 
 
 def _same_clause(others: Sequence[BandResult]) -> Iterable[tuple[str, list[BandResult]]]:
