@@ -301,10 +301,11 @@ def missing_notes(explanation: Explanation, style: Style = TEXT) -> tuple[str, .
 
 
 def _missing_note(technique: str, reasons: Sequence[str], members: Sequence[Missing], style: Style) -> str:
-    listed = style.plain(", ").join(
+    families = style.plain(", ").join(
         family_words(one.family, style) + style.plain(f" ({one.seen} of {one.allowed} seen)") for one in members
     )
-    return style.plain(f"{NAMES[technique].capitalize()}: ") + listed + style.plain(f". {_sentence('; '.join(reasons))}")
+    head, tail = f"{NAMES[technique].capitalize()}: ", f". {_sentence('; '.join(reasons))}"
+    return style.plain(head) + families + style.plain(tail)
 
 
 def _sentence(words: str) -> str:
