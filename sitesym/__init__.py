@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from sitesym.bands.measurement import Band
     from sitesym.bands.reading import read_bands
     from sitesym.bonding import BondRules
+    from sitesym.comparison import Comparison, compare
     from sitesym.errors import InconsistencyError, NotAStructureError, ReadError, SitesymError, UsageError
     from sitesym.experiment.run_sheet import RunSheet, plan
     from sitesym.molecule_analysis import MoleculeAnalysis, analyse_molecule, compare_molecules
@@ -33,6 +34,8 @@ _HOMES = {
     "explain": "sitesym.bands.explanation",
     "read_bands": "sitesym.bands.reading",
     "BondRules": "sitesym.bonding",
+    "Comparison": "sitesym.comparison",
+    "compare": "sitesym.comparison",
     "InconsistencyError": "sitesym.errors",
     "NotAStructureError": "sitesym.errors",
     "ReadError": "sitesym.errors",
@@ -52,6 +55,7 @@ __all__ = [
     "Analysis",
     "Band",
     "BondRules",
+    "Comparison",
     "Explanation",
     "InconsistencyError",
     "MoleculeAnalysis",
@@ -64,6 +68,7 @@ __all__ = [
     "__version__",
     "analyse",
     "analyse_molecule",
+    "compare",
     "compare_molecules",
     "explain",
     "plan",

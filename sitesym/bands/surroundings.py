@@ -170,8 +170,8 @@ def site_reasons(analysis: Analysis, band: Band, families: Sequence[Family]) -> 
     reasons = []
     for one in site_lowerings(analysis, family, band.technique):
         argument = (
-            f"would need some {family.unit} to stand on a site of lower symmetry, {one.left} in place of {one.assumed}, "
-            f"which allows {family.vibration}: an impurity, a vacancy or a surface would do, the crystal kept as it is"
+            f"would need some {family.unit} on a site of lower symmetry, {one.left} in place of {one.assumed}, "
+            f"which allows {family.vibration}: an impurity, a vacancy or a surface would do, the rest kept as it is"
         )
         test = "the band is weak, and its strength follows the impurity or the treatment of the sample"
         reasons.append(Reason("symmetry_lowering", 0.3 * closeness, argument, (), (), test))
