@@ -8,7 +8,7 @@ The whole is a linear assignment, solved exactly (Kuhn 1955; scipy). The weights
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -22,17 +22,24 @@ _FURTHER, _FORBIDDEN_FREE, _UNKNOWN, _BY_COUNT = 0.7, 1.2, 1.6, 0.9
 _LOWER_FIRST = 0.1
 """Of bands that are placed by count alone the lower come first: longitudinal companions lie above."""
 
+_RIVAL = 1.0
+"""Another phase must first be there: a little dearer than the crystal itself."""
+
 _IMPOSSIBLE = 1e6
 
 
 @dataclass(frozen=True, slots=True)
 class Placed:
-    """A band, the family it was given (None: no place), the cost, and families that cost little more."""
+    """A band, the family it was given (None: no place), the cost, and families that cost little more.
+
+    rival  the family of another phase that took the band, or None.
+    """
 
     band: Band
     family: Family | None
     cost: float
     alternatives: tuple[Family, ...]
+    rival: Family | None = None
 
 
 def assign(
@@ -41,23 +48,25 @@ def assign(
     *,
     pinned: Sequence[tuple[float, str]] = (),
     forbidden: Sequence[tuple[float, str]] = (),
+    rivals: Sequence[Family] = (),
 ) -> tuple[Placed, ...]:
     """Give every band its family, in the order of the bands.
 
     pinned, forbidden  (wavenumber, family name) that the user insists on or rules out.
+    rivals             families of other phases that may be there: on the same terms, at a small cost more.
     """
     placed: dict[int, Placed] = {}
     for technique in TECHNIQUES:
         chosen = [index for index, band in enumerate(bands) if band.technique == technique]
         mine = [bands[index] for index in chosen]
-        for index, result in zip(chosen, _assign_one(mine, families, technique, pinned, forbidden), strict=True):
-            placed[index] = result
+        results = _assign_one(mine, families, technique, pinned, forbidden, rivals)
+        placed.update(zip(chosen, results, strict=True))
     return tuple(placed[index] for index in range(len(bands)))
 
 
 def _assign_one(
     bands: Sequence[Band], families: Sequence[Family], technique: str,
-    pinned: Sequence[tuple[float, str]], forbidden: Sequence[tuple[float, str]],
+    pinned: Sequence[tuple[float, str]], forbidden: Sequence[tuple[float, str]], rivals: Sequence[Family],
 ) -> list[Placed]:  # fmt: skip
     from scipy.optimize import linear_sum_assignment
 
@@ -71,12 +80,17 @@ def _assign_one(
     columns = [base[:, k] + _FURTHER * n * families[k].is_internal for k, n in slots]
     stay = np.full((len(bands), len(bands)), _IMPOSSIBLE)
     np.fill_diagonal(stay, UNPLACED)
-    matrix = np.column_stack([*columns, stay])
+    others = [(rival, n) for rival in rivals for n in range(min(rival.capacity(technique), len(bands)))]
+    foreign = [[_cost(band, rival, technique, (), ()) + _RIVAL + _FURTHER * n for band in bands] for rival, n in others]
+    matrix = np.column_stack([*columns, *(np.array(column) for column in foreign), stay])
     _, taken = linear_sum_assignment(matrix)
-    return [
-        _placed(band, families, base[row], slots[column][0] if column < len(slots) else None, technique)
-        for row, (band, column) in enumerate(zip(bands, taken.tolist(), strict=True))
-    ]
+    results = []
+    for row, (band, column) in enumerate(zip(bands, taken.tolist(), strict=True)):
+        place = slots[column][0] if column < len(slots) else None
+        result = _placed(band, families, base[row], place, technique)
+        beyond = column - len(slots)
+        results.append(replace(result, rival=others[beyond][0]) if 0 <= beyond < len(others) else result)
+    return results
 
 
 def _placed(

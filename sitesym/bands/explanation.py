@@ -92,9 +92,10 @@ def explain(
     families = inventory(analysis)
     same = same_bands(ordered)
     distinct = [ordered[k] for k in dict.fromkeys(same)]
-    placed = assign(distinct, families, pinned=pinned, forbidden=forbidden)
-    lower = lowerings(analysis, families, distinct, placed)
     others = tuple(Suspect(name, inventory(other)) for name, other in suspects)
+    rivals = [family for suspect in others for family in suspect.families]
+    placed = assign(distinct, families, pinned=pinned, forbidden=forbidden, rivals=rivals)
+    lower = lowerings(analysis, families, distinct, placed, rivals)
     by_first = dict(zip(dict.fromkeys(same), placed, strict=True))
     results = tuple(
         _result(analysis, families, placed, band, by_first[first], lower, others, laser)
@@ -157,7 +158,7 @@ def _reasons(
         *resonance_reasons(analysis, band, others, parents),
         *leakage_reasons(analysis, band, families, one.family),
         *isotope_reasons(band, others),
-        *phase_reasons(band, suspects),
+        *phase_reasons(one, suspects),
     ]
     if one.family is not None:
         own = _of_place(analysis, one, others)

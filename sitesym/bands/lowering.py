@@ -44,10 +44,14 @@ class Lowering:
 
 
 def lowerings(
-    analysis: Analysis, families: Sequence[Family], bands: Sequence[Band], placed: Sequence[Placed]
+    analysis: Analysis,
+    families: Sequence[Family],
+    bands: Sequence[Band],
+    placed: Sequence[Placed],
+    rivals: Sequence[Family] = (),
 ) -> tuple[Lowering, ...]:
     """The highest subgroups that account for bands without a place, the best first; empty when none is left over."""
-    left = [one.band for one in placed if one.family is None]
+    left = [one.band for one in placed if one.family is None and one.rival is None]
     if not left:
         return ()
     found: list[Lowering] = []
@@ -55,9 +59,10 @@ def lowerings(
         if any(set(other.subgroup.indices) >= set(subgroup.indices) and not other.fails for other in found):
             continue
         lowered = _lowered(analysis.factor_group, subgroup, families)
-        again = assign(bands, lowered)
+        again = assign(bands, lowered, rivals=rivals)
         crowded = _crowded(again)
-        fails = tuple(one.band for one in again if one.family is None or one.band in crowded)
+        homeless = {one.band for one in again if one.family is None and one.rival is None}
+        fails = tuple(one.band for one in again if one.band in homeless | crowded)
         explains = tuple(band for band in left if band not in fails)
         if explains and not _is_implied(subgroup, explains, found):
             allowed = [sum(family.capacity(technique) for family in lowered) for technique in ("infrared", "raman")]

@@ -10,6 +10,7 @@ from importlib.resources import files
 from typing import Any
 
 from sitesym.analysis import Analysis
+from sitesym.bands.assignment import Placed
 from sitesym.bands.inventory import Family
 from sitesym.bands.lowering import Lowering
 from sitesym.bands.measurement import Band
@@ -125,9 +126,10 @@ def disorder_reasons(analysis: Analysis, band: Band, families: Sequence[Family])
     return [Reason("disorder", 0.55, argument, (), (), test)]
 
 
-def phase_reasons(band: Band, suspects: Sequence[Suspect]) -> list[Reason]:
-    """Fundamentals of suspected phases near the band, compared on the same terms as those of the crystal itself."""
-    reasons = []
+def phase_reasons(placed: Placed, suspects: Sequence[Suspect]) -> list[Reason]:
+    """Fundamentals of suspected phases near a band, first the one that took it."""
+    band = placed.band
+    reasons = [_taken(placed.rival, suspect) for suspect in suspects if placed.rival in suspect.families]
     for suspect in suspects:
         for family in suspect.families:
             if family.wavenumber is None or not family.capacity(band.technique):
@@ -139,6 +141,13 @@ def phase_reasons(band: Band, suspects: Sequence[Suspect]) -> list[Reason]:
             test = f"other bands of {suspect.name} must be there too; its share varies from place to place"
             reasons.append(Reason("second_phase", 0.6 * (1 - off / 4), argument, (), (), test))
     return reasons
+
+
+def _taken(rival: Family | None, suspect: Suspect) -> Reason:
+    assert rival is not None
+    argument = f"allowed as {rival.name} of {suspect.name}, which accounts for it better than the crystal assumed"
+    test = f"other bands of {suspect.name} must be there too; its share varies from place to place"
+    return Reason("second_phase", 0.75, argument, (), (), test)
 
 
 def lowering_reasons(
