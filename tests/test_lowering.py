@@ -44,3 +44,11 @@ def test_site_of_lower_symmetry_allows_the_symmetric_stretch_of_carbonate_in_inf
     assert site_lowerings(analysis, symmetric, "raman") == ()
     reasons = explain(analysis, [Band(1063, "infrared"), Band(1086, "raman"), Band(1407, "infrared")]).bands[1].reasons
     assert any("C3 in place of D3" in reason.argument for reason in reasons)
+
+
+def test_water_in_an_anhydrous_salt_is_offered_as_a_hydrate() -> None:
+    """K2SO4 has no water; 1640 and 3450 in infrared are the bands of water (common practice). Gypsum has its own."""
+    sulfate = explain(analysed("potassium sulfate"), [Band(1640, "infrared"), Band(3450, "infrared")])
+    assert all(any("hydrate" in reason.argument for reason in one.reasons) for one in sulfate.bands)
+    gypsum = explain(analysed("gypsum"), [Band(1621, "infrared"), Band(3405, "infrared")])
+    assert not any("hydrate" in reason.argument for one in gypsum.bands for reason in one.reasons)

@@ -26,6 +26,7 @@ from sitesym.bands.surroundings import (
     site_reasons,
     unexplained,
 )
+from sitesym.bands.water import water_reasons
 from sitesym.errors import UsageError
 
 
@@ -168,6 +169,7 @@ def _reasons(
         *disorder_reasons(analysis, band, families),
         *lowering_reasons(analysis, band, lower, families),
         *site_reasons(analysis, band, families),
+        *water_reasons(analysis, band),
         *_beyond(one, families, others),
         unexplained(band),
     ]
