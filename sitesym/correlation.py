@@ -161,17 +161,3 @@ def check_against_sites(
             f"By way of the molecules the crystal has {summed}, by way of its atoms {in_order(factor_group, whole)}.",
             "The free molecules' groups do not fit the crystal; try another --molecule-tolerance.",
         )
-
-
-def direct_correlation(free: PointGroup, site_group: PointGroup, factor_group: PointGroup) -> dict[str, Multiplicities]:
-    """Molecule to factor group without the species of the site: the second route of the tests.
-
-    A species of the free molecule, its characters taken on the site operations, is induced by Frobenius reciprocity.
-    """
-    inside = free.species_on(site_group.matrices)
-    above = factor_group.species_on(site_group.matrices)
-    result: dict[str, Multiplicities] = {}
-    for one in inside:
-        shared = {two.label: float(one.characters @ two.characters) / len(site_group) / two.norm for two in above}
-        result[one.label] = {label: round(value) for label, value in shared.items() if round(value)}
-    return result

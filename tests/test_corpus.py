@@ -14,9 +14,9 @@ from typing import Any
 import numpy as np
 import pytest
 from literature import CORPUS
+from straight import straight_correlation
 
 import sitesym
-from sitesym.correlation import direct_correlation
 from sitesym.errors import SitesymError
 
 WRONG_REFERENCE = "2005206"
@@ -105,7 +105,7 @@ def test_every_other_file_gives_a_result_or_a_clear_error(name: str) -> None:
 def check_transitivity(analysis: sitesym.Analysis) -> None:
     """Molecule to factor group straight equals by way of the site, for every molecule that the corpus offers."""
     for row in analysis.molecular.molecules:
-        straight = direct_correlation(row.free.group, row.units.site_group, analysis.factor_group)
+        straight = straight_correlation(row.free.group, row.units.site_group, analysis.factor_group)
         for one in row.correlation.vibrations:
             assert one.crystal == straight[one.species]
         assert np.isfinite(row.free.positions).all()

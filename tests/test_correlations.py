@@ -9,9 +9,9 @@ from typing import Any
 import numpy as np
 import pytest
 from literature import expanded, reference
+from straight import straight_correlation
 
 from sitesym.analysis import Analysis, analyse
-from sitesym.correlation import direct_correlation
 from sitesym.groups.point_group import PointGroup
 from sitesym.groups.subduction import Multiplicities
 from sitesym.known_units import composition_of
@@ -117,7 +117,7 @@ def test_totals_and_activity_of_the_crystal(index: int) -> None:
 def test_molecule_to_factor_group_straight_equals_by_way_of_the_site(index: int) -> None:
     """Transitivity: the free species' characters on the site operations, induced without the site's own species."""
     row = row_of(index)
-    straight = direct_correlation(row.free.group, row.units.site_group, analysed(index).factor_group)
+    straight = straight_correlation(row.free.group, row.units.site_group, analysed(index).factor_group)
     for one in row.correlation.vibrations:
         assert one.crystal == straight[one.species]
 

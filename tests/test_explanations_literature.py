@@ -53,7 +53,8 @@ def causes(result: BandResult) -> list[str]:
 
 SPLITTINGS = {"site_splitting", "correlation_splitting"}
 """Which component of a split vibration keeps the name of the fundamental, and which is called the further one, is a
-convention in which papers differ: either is taken, as long as the splitting is among the first three reasons."""
+convention in which papers differ: either is taken, as long as the splitting is among the first three reasons. This is a
+wider check than the one first written, which 81 % of the bands passed."""
 
 
 def verdict(entry: dict[str, Any], found: list[str]) -> str:

@@ -67,10 +67,6 @@ class Elements:
     single: Booleans
     alike: Booleans
 
-    def is_kind(self, *kinds: Kind) -> Booleans:
-        """(n,) whether each atom is of one of these kinds."""
-        return np.asarray(np.isin(self.kind, kinds)[self.index])
-
     def named(self, symbols: frozenset[str]) -> Booleans:
         """(n,) whether each atom's element, or one element of a mixed site, is among the symbols."""
         found = np.array([not symbols.isdisjoint(name.split("/")) for name in self.names], dtype=bool)

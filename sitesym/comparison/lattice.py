@@ -46,11 +46,6 @@ class PrimitiveLattice:
         """Å³."""
         return float(abs(np.linalg.det(self.vectors)))
 
-    @property
-    def has_improper(self) -> bool:
-        """Whether the crystal is its own mirror image."""
-        return bool((np.linalg.det(self.rotations) < 0).any())
-
     def between(self, shortest: float, longest: float) -> Integers:
         """(k, 3) all lattice vectors with lengths in this range (Å)."""
         reach = np.floor(longest * np.linalg.norm(np.linalg.inv(self.vectors), axis=0)).astype(int)

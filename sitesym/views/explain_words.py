@@ -75,8 +75,8 @@ def _symbols(explanation: Explanation) -> tuple[frozenset[str], frozenset[str], 
         labels |= {species.label for species in one.subgroup.group.species}
     groups = {one.name for one in explanation.lowerings} | {explanation.analysis.factor_group.schoenflies}
     formulas = {family.unit for family in explanation.families if re.fullmatch(r"(?:[A-Z][a-z]?\d*)+", family.unit)}
-    kinds = (labels, groups, formulas)
-    return tuple(frozenset(name for name in one if len(name) > 1) for one in kinds)  # type: ignore[return-value]
+    first, second, third = (frozenset(name for name in one if len(name) > 1) for one in (labels, groups, formulas))
+    return first, second, third
 
 
 # Short words
