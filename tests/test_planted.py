@@ -1,6 +1,6 @@
 """How often the true cause of a planted band is ranked first, and among the first three, over 500 synthetic spectra.
 
-The weights of the reasons were set while looking at the spectra with seeds from 0, 10 000 and 20 000 on, 500 each. Those
+The weights of the reasons were set while looking at spectra with seeds from 0, 10 000 and 20 000 on, 500 each. Those
 here were drawn once, after the last change of a weight, and no weight was changed for them.
 """
 
